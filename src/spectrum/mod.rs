@@ -1,0 +1,11 @@
+//! From an outline to certified levels: chooses the lattice, assembles, solves, judges the error,
+//! and refines until the accuracy asked for is reached.
+//!
+//! Enters: an [`Outline`], the kinetic constant and what is wanted. Leaves: a [`Spectrum`].
+//! This room knows no files, no units of measure, no screens.
+
+mod level;
+mod solve;
+
+pub use level::{Certificate, LatticeInfo, Level, Spectrum, Timings, Wanted};
+pub use solve::{SpectrumError, draft, solve};
