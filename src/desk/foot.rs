@@ -8,6 +8,7 @@ use ratatui::layout::Rect;
 use ratatui::style::{Modifier, Style};
 use ratatui::text::{Line, Span};
 use ratatui::widgets::Widget;
+use unicode_width::UnicodeWidthStr;
 
 /// Draws the line of messages and questions.
 pub fn notice(state: &State, buffer: &mut Buffer, area: Rect) {
@@ -29,42 +30,63 @@ pub fn notice(state: &State, buffer: &mut Buffer, area: Rect) {
             state.paint.accent()
         };
         let text = shorten(&m.text, area.width.into(), state.ascii());
-        Line::styled(text, style).render(area, buffer);
+        Line::from(Span::styled(text, style)).render(area, buffer);
     }
 }
 
-/// Draws the keys.
+/// A place on the line of keys.
+struct Hint {
+    label: String,
+    word: &'static str,
+}
+
+impl Hint {
+    fn width(&self) -> usize {
+        self.label.width() + 1 + self.word.width()
+    }
+}
+
+/// Draws the keys. Where they do not all fit, those before the last three (back, help, quit) go.
 pub fn keys(state: &State, buffer: &mut Buffer, area: Rect) {
+    let room = usize::from(area.width);
+    let mut hints = hints(state);
+    let width = |hints: &[Hint], gap: usize| {
+        let all: usize = hints.iter().map(Hint::width).sum();
+        all + gap * hints.len().saturating_sub(1)
+    };
+    let gap = if width(&hints, 3) <= room { 3 } else { 2 };
+    while width(&hints, gap) > room && hints.len() > 3 {
+        hints.remove(hints.len() - 4);
+    }
+    let mut spans = Vec::new();
+    for (k, hint) in hints.into_iter().enumerate() {
+        spans.push(Span::raw(" ".repeat(if k == 0 { 0 } else { gap })));
+        spans.push(Span::styled(
+            hint.label,
+            Style::new().add_modifier(Modifier::BOLD),
+        ));
+        spans.push(Span::styled(format!(" {}", hint.word), state.paint.quiet()));
+    }
+    Line::from(spans).render(area, buffer);
+}
+
+fn hints(state: &State) -> Vec<Hint> {
     let place = state.place();
     let here: Vec<&Entry> = ACTIONS
         .iter()
         .filter(|e| e.places.contains(&place) && !e.hint.is_empty())
         .collect();
-    let mut spans = Vec::new();
-    let mut used = 0;
-    for group in here.chunk_by(|a, b| a.hint == b.hint) {
-        let labels: Vec<String> = group
-            .iter()
-            .filter_map(|e| e.keys.first())
-            .map(|k| k.label(state.ascii()))
-            .collect();
-        let one_cell = labels.iter().all(|l| l.chars().count() == 1);
-        let label = labels.join(if one_cell { "" } else { "/" });
-        let word = word(state, group[0]);
-        let long = label.chars().count() + 1 + word.len();
-        let before = if used == 0 { 0 } else { 3 };
-        if used + before + long > usize::from(area.width) {
-            break;
-        }
-        spans.push(Span::raw(" ".repeat(before)));
-        spans.push(Span::styled(
-            label,
-            Style::new().add_modifier(Modifier::BOLD),
-        ));
-        spans.push(Span::styled(format!(" {word}"), state.paint.quiet()));
-        used += before + long;
-    }
-    Line::from(spans).render(area, buffer);
+    here.chunk_by(|a, b| a.hint == b.hint)
+        .map(|group| {
+            let first = group.iter().filter_map(|e| e.keys.first());
+            let labels: Vec<String> = first.map(|k| k.label(state.ascii())).collect();
+            let one_cell = labels.iter().all(|l| l.width() == 1);
+            Hint {
+                label: labels.join(if one_cell { "" } else { "/" }),
+                word: word(state, group[0]),
+            }
+        })
+        .collect()
 }
 
 /// The word beside a key; for a switch, what it would switch to.

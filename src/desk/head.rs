@@ -54,7 +54,7 @@ fn status(state: &State) -> Line<'static> {
         return gauge(state, "writing the picture", &Running { since, step: None });
     }
     if state.solving.failure.is_some() {
-        return Line::styled("no levels", paint.alarm());
+        return Line::from(Span::styled("no levels", paint.alarm()));
     }
     let Some(s) = &state.solving.spectrum else {
         return Line::default();
@@ -62,9 +62,15 @@ fn status(state: &State) -> Line<'static> {
     let n = s.levels.len();
     let levels = if n == 1 { "level" } else { "levels" };
     if s.certificate.complete {
-        Line::styled(format!("{n} {levels}, none missing"), paint.quiet())
+        Line::from(Span::styled(
+            format!("{n} {levels}, none missing"),
+            paint.quiet(),
+        ))
     } else {
-        Line::styled(format!("{n} {levels}, count not proven"), paint.alarm())
+        Line::from(Span::styled(
+            format!("{n} {levels}, count not proven"),
+            paint.alarm(),
+        ))
     }
 }
 

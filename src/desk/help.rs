@@ -39,7 +39,7 @@ pub fn help(state: &State, buffer: &mut Buffer, area: Rect) {
         View::Plate => "Keys on the plate",
         View::Sheet => "Keys on the sheet",
     };
-    Line::styled(view, state.paint.accent()).render(row(area, 0), buffer);
+    Line::from(Span::styled(view, state.paint.accent())).render(row(area, 0), buffer);
     let all = entries(state);
     let scroll = scroll.min(most_scroll(state));
     let fits = room(area);
@@ -61,7 +61,7 @@ pub fn help(state: &State, buffer: &mut Buffer, area: Rect) {
             (scroll + fits).min(all.len()),
             all.len()
         );
-        Line::styled(text, state.paint.quiet())
+        Line::from(Span::styled(text, state.paint.quiet()))
             .right_aligned()
             .render(row(area, 0), buffer);
     }

@@ -9,7 +9,7 @@ use crate::spectrum::Level;
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::style::Style;
-use ratatui::text::Line;
+use ratatui::text::{Line, Span};
 use ratatui::widgets::Widget;
 
 /// Boltzmann's constant in meV/K (CODATA 2022, exact).
@@ -71,7 +71,7 @@ pub fn ladder(state: &State, buffer: &mut Buffer, area: Rect) {
     let at = (left.saturating_sub(unit.len())).max(0) as u16;
     buffer.set_string(area.x + at, area.y, unit, state.paint.quiet());
 
-    let numbers = if area.width >= 22 { 5 } else { 3 };
+    let numbers = if area.width >= 22 { 6 } else { 2 };
     let start = left + 2;
     let width = usize::from(area.width).saturating_sub(start + 2 + numbers);
     let bars = Bars {
@@ -80,7 +80,7 @@ pub fn ladder(state: &State, buffer: &mut Buffer, area: Rect) {
         start,
         width: width.max(3),
     };
-    let mut canvas = Canvas::new(bars.width + 2, rows);
+    let mut canvas = Canvas::new(bars.width + 1, rows);
     for group in groups(levels.iter().map(|l| l.multiplicity)) {
         let chosen = group.contains(&state.chosen);
         for (k, level) in levels[group.clone()].iter().enumerate() {
@@ -134,11 +134,9 @@ struct Bars {
 }
 
 impl Bars {
-    /// Columns of copy `k` of `of`: at least half of the width stays free beside a single level,
-    /// so that a pair is seen to be a pair.
+    /// Columns of copy `k` of `of`.
     fn columns(&self, (k, of): (usize, usize)) -> std::ops::Range<usize> {
-        let slots = of.max(2);
-        let each = ((self.width + 1) / slots).saturating_sub(1).max(1);
+        let each = ((self.width + 1) / of.max(1)).saturating_sub(1).max(1);
         let from = (k * (each + 1)).min(self.width - 1);
         from..(from + each).min(self.width)
     }
@@ -149,6 +147,11 @@ impl Bars {
         for c in columns.clone() {
             canvas.dot(2 * c, y, ink);
             canvas.dot(2 * c + 1, y, ink);
+        }
+        // the chosen bar stands out, so that it is known from one close by without colour
+        if ink == Ink::Chosen && columns.end == self.width {
+            canvas.dot(2 * self.width, y, ink);
+            canvas.dot(2 * self.width + 1, y, ink);
         }
         let (top, low) = (
             self.axis.dot(level.energy + level.error),
@@ -177,8 +180,8 @@ fn thermal(
     }
     let kt = K_B * state.temperature;
     let (from, to) = (bars.axis.dot(energy), bars.axis.dot(energy + kt));
-    for j in to..=from {
-        canvas.dot(2 * bars.width + 2, j, Ink::Thermal);
+    for j in to..from {
+        canvas.dot(2 * bars.width + 1, j, Ink::Thermal);
     }
     let text = format!(
         "kT {} at {} K",
@@ -191,7 +194,7 @@ fn thermal(
     } else {
         short
     };
-    Line::styled(text, state.paint.quiet())
+    Line::from(Span::styled(text, state.paint.quiet()))
         .render(Rect::new(area.x, area.bottom() - 1, area.width, 1), buffer);
 }
 

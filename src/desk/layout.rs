@@ -34,7 +34,7 @@ pub fn divide(width: u16, height: u16) -> Option<Layout> {
     let margin = if width >= 120 { 2 } else { 1 };
     let gap = if width >= 120 { 4 } else { 2 };
     let inner = width - 2 * margin;
-    let ladder = (width / 6).clamp(12, 34);
+    let ladder = (width / 6 + 1).clamp(12, 34);
     let slip = (width * 3 / 10).clamp(25, 40);
     let plate = inner - ladder - slip - 2 * gap;
     let top = 2;
@@ -68,14 +68,14 @@ pub struct Tiles {
 impl Tiles {
     /// As many plates of the shape's proportions (width over height, in cells) as stay readable.
     pub fn arrange(body: Rect, proportion: f64) -> Self {
-        let height = (body.height / 4).clamp(5, 12);
-        let width = (f64::from(height) * proportion)
-            .round()
-            .clamp(12.0, f64::from(body.width));
-        let width = width as u16;
+        let least = (body.height / 4).clamp(5, 12);
+        let down = ((body.height + 1) / (least + 2)).max(1);
+        let height = ((body.height + 1) / down).saturating_sub(2).max(1);
+        let width = f64::from(height) * proportion;
+        let width = width.round().clamp(12.0, f64::from(body.width.max(12))) as u16;
         Self {
             across: usize::from((body.width + 2) / (width + 2)).max(1),
-            down: usize::from((body.height + 1) / (height + 2)).max(1),
+            down: usize::from(down),
             width,
             height,
         }

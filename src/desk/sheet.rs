@@ -5,7 +5,7 @@ use super::plate::{develop, outline_only};
 use super::state::State;
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
-use ratatui::text::Line;
+use ratatui::text::{Line, Span};
 use ratatui::widgets::Widget;
 
 /// Draws the page of plates that holds the chosen one.
@@ -60,5 +60,7 @@ fn label(state: &State, buffer: &mut Buffer, area: Rect, mode: usize) {
         (true, false) => ("▸", state.paint.accent()),
     };
     let text = format!("{sign}{}  {energy}", level.index);
-    Line::styled(text, style).centered().render(area, buffer);
+    Line::from(Span::styled(text, style))
+        .centered()
+        .render(area, buffer);
 }

@@ -12,7 +12,7 @@ use super::state::{Overlay, State, View};
 use ratatui::Frame;
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
-use ratatui::text::Line;
+use ratatui::text::{Line, Span};
 use ratatui::widgets::Widget;
 
 /// Draws the desk.
@@ -91,7 +91,7 @@ fn too_small(state: &State, buffer: &mut Buffer, area: Rect) {
             state.paint.quiet()
         };
         if row.height == 1 {
-            Line::styled(text.as_str(), style)
+            Line::from(Span::styled(text.as_str(), style))
                 .centered()
                 .render(row, buffer);
         }

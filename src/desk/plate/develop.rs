@@ -26,21 +26,21 @@ pub const RAMP: [char; 10] = [' ', '.', ':', '-', '=', '+', '*', '#', '%', '@'];
 /// Round letters from light to heavy, for the negative lobes.
 pub const ROUND: [char; 10] = [' ', '.', ',', 'c', 'o', 'e', 'O', 'Q', '0', '8'];
 
-/// Thresholds of a regular halftone (Bayer 1973), in sixteenths.
-const HALFTONE: [[u8; 4]; 4] = [[0, 8, 2, 10], [12, 4, 14, 6], [3, 11, 1, 9], [15, 7, 13, 5]];
-/// Thresholds that fill every other row first: negative lobes look ruled, not dotted.
-const RULED: [[u8; 4]; 4] = [
-    [0, 4, 1, 5],
-    [20, 24, 21, 25],
-    [2, 6, 3, 7],
-    [22, 26, 23, 27],
-];
+/// Rows in the order in which negative lobes fill them: they look ruled, not dotted.
+const RULED: [f64; 4] = [0.0, 0.5, 0.25, 0.75];
 
-/// Whether the dot (i, j) is inked for a tone in -1..=1.
+/// Whether the dot (i, j) is inked for a tone in -1..=1. Positive tones are strewn by a sequence
+/// of low discrepancy (M. Roberts, 2018, from the plastic number), which shows no grid; negative
+/// ones fill every other row first and never more than that, so that signs differ without colour.
 pub fn inked(tone: f64, i: usize, j: usize) -> bool {
-    let table = if tone < 0.0 { &RULED } else { &HALFTONE };
-    let full = if tone < 0.0 { 8.0 } else { 16.0 };
-    tone.abs() * full > f64::from(table[j & 3][i & 3]) + 0.5
+    let strewn = |i: f64, j: f64| (0.754_877_666_246_69 * i + 0.569_840_290_998_05 * j).fract();
+    if tone < 0.0 {
+        let row = RULED[j & 3];
+        let along = strewn(i as f64, 0.0);
+        return row < 0.5 && -tone > row + 0.5 * along;
+    }
+    // a trace of the scale's foot stays clean
+    tone > 0.03 && tone > strewn(i as f64 + 0.5, j as f64)
 }
 
 /// What is drawn of a sample: 0..=1 for a density, -1..=1 for a wave.
@@ -169,10 +169,11 @@ impl Cell<'_> {
         }
     }
 
-    /// The ground under a line: the body of the dot where most of the cell is inside.
+    /// The ground under a line: the body of the dot where the cell is nearly all inside, so
+    /// that no shade shows beyond the line.
     fn body(&self, look: &Look) -> Option<Color> {
         let (tone, share) = self.mean(0..4)?;
-        (look.glyphs == Glyphs::HalfBlock && share > 0.5).then(|| self.colour(tone, look))
+        (look.glyphs == Glyphs::HalfBlock && share > 0.7).then(|| self.colour(tone, look))
     }
 
     fn halves(&self, look: &Look) -> Drawn {

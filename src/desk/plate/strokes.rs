@@ -95,14 +95,32 @@ impl Pen {
         }
     }
 
-    /// A straight line between places in dots: one dot a step along the longer axis.
+    /// A straight line between places in dots: one dot for each column, or each row where it is
+    /// steeper, at the middle of that column or row.
     fn line(&mut self, p: (f64, f64), q: (f64, f64)) {
         let (dx, dy) = (q.0 - p.0, q.1 - p.1);
-        let steps = (dx.abs().max(dy.abs()).ceil() as usize).max(1);
-        for k in 0..=steps {
-            let t = k as f64 / steps as f64;
-            self.dot(p.0 + t * dx, p.1 + t * dy);
+        // edges that fall between two dots go to the same one all along, whatever the rounding
+        const HAIR: f64 = 1e-6;
+        let (p, q) = ((p.0 + HAIR, p.1 + HAIR), (q.0 + HAIR, q.1 + HAIR));
+        let flat = dx.abs() >= dy.abs();
+        let (from, to) = if flat { (p.0, q.0) } else { (p.1, q.1) };
+        let (first, last) = ((from.min(to) - 0.5).ceil(), (from.max(to) - 0.5).floor());
+        let mut at = first + 0.5;
+        while at <= last + 0.5 {
+            let t = (at - from) / (to - from);
+            if flat {
+                self.dot(at, p.1 + t * dy);
+            } else {
+                self.dot(p.0 + t * dx, at);
+            }
+            at += 1.0;
         }
+        // straight edges keep their ends, so that corners stay sharp
+        if dx.hypot(dy) > 3.0 {
+            self.dot(p.0, p.1);
+            self.dot(q.0, q.1);
+        }
+        let steps = (dx.abs().max(dy.abs()).ceil() as usize).max(1);
         let pieces = 2 * steps;
         for k in 0..pieces {
             let t = (k as f64 + 0.5) / pieces as f64;
