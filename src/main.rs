@@ -1,5 +1,5 @@
 //! Thin stand-in until the command line stands.
-use dotwright::desk::{Document, Glyphs, Rehearsal, Scale, Settings, run};
+use dotwright::desk::{Document, Glyphs, Scale, Settings, run};
 use dotwright::geometry::{Outline, Point};
 use dotwright::spectrum::Wanted;
 
@@ -27,9 +27,6 @@ fn main() {
     };
     let settings = Settings {
         glyphs: std::env::args().nth(2).and_then(|n| Glyphs::named(&n)),
-        rehearsal: std::env::var("DOTWRIGHT_REHEARSE")
-            .ok()
-            .and_then(|w| Rehearsal::named(&w)),
         ..Settings::default()
     };
     if let Err(e) = run(document, settings) {

@@ -26,6 +26,9 @@ const BEAT: Duration = Duration::from_millis(100);
 /// Between two looks at the clock while nothing runs.
 const REST: Duration = Duration::from_secs(3600);
 
+/// Names a [`Rehearsal`] to a desk that is started as a program of its own.
+const REHEARSE: &str = "DOTWRIGHT_REHEARSE";
+
 /// What the person chose on the command line.
 #[derive(Clone, Debug, Default)]
 pub struct Settings {
@@ -114,7 +117,12 @@ pub fn run(document: Document, settings: Settings) -> Result<(), DeskError> {
         state.temperature = t;
     }
     let guard = Guard::enter()?;
-    let done = stay(&mut state, settings.rehearsal);
+    let staged = || {
+        std::env::var(REHEARSE)
+            .ok()
+            .and_then(|w| Rehearsal::named(&w))
+    };
+    let done = stay(&mut state, settings.rehearsal.or_else(staged));
     drop(guard);
     Ok(done?)
 }
