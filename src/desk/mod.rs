@@ -17,6 +17,7 @@ mod jobs;
 mod keys;
 mod ladder;
 mod layout;
+mod listen;
 mod notation;
 mod paint;
 mod plate;
