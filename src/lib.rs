@@ -9,6 +9,7 @@ pub mod geometry;
 pub mod lattice;
 pub mod modes;
 pub mod operators;
+pub mod pictures;
 pub mod progress;
 pub mod spectrum;
 pub mod units;
