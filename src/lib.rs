@@ -11,5 +11,6 @@ pub mod modes;
 pub mod operators;
 pub mod pictures;
 pub mod progress;
+pub mod report;
 pub mod spectrum;
 pub mod units;
