@@ -9,4 +9,4 @@ mod point;
 
 pub use outline::{Corner, Loop, Outline};
 pub use piece::Piece;
-pub use point::{Box2, Point};
+pub use point::{Box2, Point, pt};
