@@ -6,11 +6,13 @@
 
 pub mod eigen;
 pub mod geometry;
+pub mod intake;
 pub mod lattice;
 pub mod modes;
 pub mod operators;
 pub mod pictures;
 pub mod progress;
 pub mod report;
+pub mod shape;
 pub mod spectrum;
 pub mod units;
