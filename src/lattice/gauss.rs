@@ -73,8 +73,15 @@ mod tests {
         for n in 1..=MOST_POINTS {
             let r = rule(n);
             for d in (0..2 * n).step_by(2) {
-                let s: f64 = r.x.iter().zip(&r.w).map(|(x, w)| w * x.powi(d as i32)).sum();
-                assert!((s - 2.0 / (d as f64 + 1.0)).abs() < 1e-14, "n {n} degree {d}");
+                let s: f64 =
+                    r.x.iter()
+                        .zip(&r.w)
+                        .map(|(x, w)| w * x.powi(d as i32))
+                        .sum();
+                assert!(
+                    (s - 2.0 / (d as f64 + 1.0)).abs() < 1e-14,
+                    "n {n} degree {d}"
+                );
             }
         }
     }

@@ -7,15 +7,19 @@
 pub mod gauss;
 pub mod spline;
 
+mod cloud;
 mod cutcell;
 mod face;
 mod region;
+mod singular;
 mod space;
 mod trace;
 mod tree;
 
+pub use cloud::{Cloud, clouds};
 pub use face::Face;
 pub use region::{Cell, Cut, Region};
+pub use singular::{CornerSpace, Singular, Value, is_singular};
 pub use space::{Role, Space, Tie};
 pub use trace::{Grid, Part, Trace};
 pub use tree::{DEEPEST, Key, Splits};
@@ -157,6 +161,9 @@ impl Lattice {
 
     /// Size of the smallest cells.
     pub fn finest(&self) -> f64 {
-        self.regions.iter().map(|r| r.h).fold(f64::INFINITY, f64::min)
+        self.regions
+            .iter()
+            .map(|r| r.h)
+            .fold(f64::INFINITY, f64::min)
     }
 }

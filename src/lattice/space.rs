@@ -166,13 +166,7 @@ fn blocks(region: &Region, inner: &[bool], size: [usize; 2], p: usize) -> Vec<bo
 }
 
 /// The block nearest to spline (i, j): by distance, then by distance of centres.
-fn nearest(
-    ok: &[bool],
-    cells: [usize; 2],
-    i: usize,
-    j: usize,
-    p: usize,
-) -> Option<(usize, usize)> {
+fn nearest(ok: &[bool], cells: [usize; 2], i: usize, j: usize, p: usize) -> Option<(usize, usize)> {
     let reach = p + FARTHEST as usize + 1;
     let mut best = None;
     let mut least = f64::INFINITY;

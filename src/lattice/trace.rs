@@ -118,7 +118,10 @@ impl Trace {
     /// along the other axis. A line on the lane's upper edge is taken as its limit from below.
     pub fn crossings(&self, axis: usize, lane: i32, v: f64) -> Vec<f64> {
         let k = lane - self.first[axis];
-        let Some(parts) = usize::try_from(k).ok().and_then(|k| self.lanes[axis].get(k)) else {
+        let Some(parts) = usize::try_from(k)
+            .ok()
+            .and_then(|k| self.lanes[axis].get(k))
+        else {
             return Vec::new();
         };
         let mut out: Vec<f64> = parts

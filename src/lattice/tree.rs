@@ -149,7 +149,14 @@ pub fn leaves(trace: &Trace, splits: &Splits, columns: &mut Columns<'_>) -> Vec<
     for i in lo[0]..=hi[0] {
         for j in lo[1]..=hi[1] {
             let parts = cut.remove(&(i, j)).unwrap_or_default();
-            descend(trace, splits, columns, Key { level: 0, i, j }, parts, &mut out);
+            descend(
+                trace,
+                splits,
+                columns,
+                Key { level: 0, i, j },
+                parts,
+                &mut out,
+            );
         }
     }
     out

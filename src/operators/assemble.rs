@@ -65,7 +65,14 @@ fn fill(lattice: &Lattice, n: usize, t: &Tables) -> [Band; 2] {
         kernel.element(&c.weights, region.h, &mut element);
         block.fill(0.0);
         let low = region.low(c.i, c.j);
-        add_wall(&mut block, &mut traces, &lattice.trace.pieces, &c.parts, low, region.h);
+        add_wall(
+            &mut block,
+            &mut traces,
+            &lattice.trace.pieces,
+            &c.parts,
+            low,
+            region.h,
+        );
         symmetrise(&mut block, b);
         for (e, w) in element.stiffness.iter_mut().zip(&block) {
             *e += w;
@@ -119,7 +126,7 @@ fn faces(lattice: &Lattice, bands: &mut [[Band; 2]]) -> Vec<(u32, u32, f64)> {
 }
 
 /// A spline as a combination of unknowns.
-fn expand(space: &Space, spline: usize) -> Vec<(u32, f64)> {
+pub(super) fn expand(space: &Space, spline: usize) -> Vec<(u32, f64)> {
     match space.roles[spline] {
         Role::Dead => Vec::new(),
         Role::Inner(u) => vec![(u, 1.0)],

@@ -5,11 +5,13 @@
 
 mod assemble;
 mod band;
+mod border;
 mod cell;
 mod glue;
 mod tables;
 mod wall;
 
 pub use assemble::{Pair, assemble};
+pub use border::{Border, Sampled, border};
 pub use tables::Tables;
-pub use wall::{WallPoint, beta, points as wall_points};
+pub use wall::{Traces, WallPoint, beta, points as wall_points};

@@ -90,6 +90,19 @@ impl Traces {
         }
     }
 
+    /// Evaluates the values alone.
+    #[inline(always)]
+    pub fn values_at(&mut self, at: Point, low: [f64; 2], h: f64) {
+        let p = self.p;
+        spline::eval(p, (at.x - low[0]) / h, 0, &mut self.bx[..=p]);
+        spline::eval(p, (at.y - low[1]) / h, 0, &mut self.by[..=p]);
+        for m in 0..=p {
+            for l in 0..=p {
+                self.value[m * (p + 1) + l] = self.bx[m] * self.by[l];
+            }
+        }
+    }
+
     /// Evaluates at a point of the cell with lower left corner `low` and size `h`.
     #[inline]
     pub fn set(&mut self, at: Point, normal: Point, low: [f64; 2], h: f64) {

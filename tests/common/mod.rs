@@ -13,7 +13,13 @@ pub fn column(file: &str, name: &str) -> Vec<f64> {
     let head = lines.next().expect("a header");
     let k = head.split(',').position(|h| h == name).expect("the column");
     lines
-        .map(|l| l.split(',').nth(k).expect("a field").parse().expect("a number"))
+        .map(|l| {
+            l.split(',')
+                .nth(k)
+                .expect("a field")
+                .parse()
+                .expect("a number")
+        })
         .collect()
 }
 

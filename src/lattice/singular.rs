@@ -1,0 +1,204 @@
+//! Corner functions ψ = χ(r) (r/ρ)^s {sin, cos}(aθ) for corners whose π/ω is not an integer
+//! (Fix, Gulati & Wakoff 1973; Strang & Fix 1973, ch. 8).
+//!
+//! θ runs from the outgoing edge through the material; χ = (1 − (r/ρ)²)⁸. With straight edges
+//! a = kπ/ω and s = a + 2j; curved edges excite a = |α + m − 2l|, s = α + m, sine and cosine.
+
+use crate::geometry::{Corner, Point};
+use std::f64::consts::{PI, TAU};
+
+/// One function of a corner.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Singular {
+    /// Angular number a.
+    pub angular: f64,
+    /// Exponent s of r.
+    pub exponent: f64,
+    /// Cosine instead of sine.
+    pub cosine: bool,
+}
+
+/// A corner with its functions, alive in the disc of radius ρ.
+#[derive(Clone, Debug)]
+pub struct CornerSpace {
+    /// Where.
+    pub at: Point,
+    /// Direction of the outgoing edge.
+    pub direction: f64,
+    /// Interior angle ω.
+    pub angle: f64,
+    /// Radius ρ of the support.
+    pub radius: f64,
+    /// The functions.
+    pub functions: Vec<Singular>,
+    /// Pieces that start and end here, numbered through the loops.
+    pub edges: [u32; 2],
+}
+
+/// Values at one point.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct Value {
+    /// ψ.
+    pub value: f64,
+    /// Δψ.
+    pub laplacian: f64,
+    /// ∇ψ.
+    pub gradient: [f64; 2],
+}
+
+/// Power of the cut-off.
+const CUT_OFF: i32 = 8;
+
+/// Whether a corner of this interior angle makes smooth functions converge slowly.
+pub fn is_singular(angle: f64) -> bool {
+    let a = PI / angle;
+    (a - a.round()).abs() > 1e-9
+}
+
+impl CornerSpace {
+    /// The functions of a corner with exponents up to `most`.
+    pub fn new(corner: &Corner, radius: f64, most: f64, edges: [u32; 2]) -> Self {
+        let curved = corner.curvatures.iter().any(|c| (c * radius).abs() > 1e-9);
+        Self {
+            at: corner.at,
+            direction: corner.direction,
+            angle: corner.angle,
+            radius,
+            functions: functions(PI / corner.angle, most, curved),
+            edges,
+        }
+    }
+
+    /// Distance from the corner.
+    pub fn distance(&self, p: Point) -> f64 {
+        (p - self.at).norm()
+    }
+
+    /// All functions at a point; zero beyond the radius. `out.len()` is the number of functions.
+    pub fn eval(&self, p: Point, out: &mut [Value]) {
+        let d = p - self.at;
+        let r = d.norm();
+        if r >= self.radius || r == 0.0 {
+            out.fill(Value::default());
+            return;
+        }
+        let half = 0.5 * self.angle;
+        // the branch cut lies on the exterior bisector
+        let theta = (d.y.atan2(d.x) - self.direction - half + PI).rem_euclid(TAU) - PI + half;
+        let x = r / self.radius;
+        let g = 1.0 - x * x;
+        let g6 = g.powi(CUT_OFF - 2);
+        let m = f64::from(CUT_OFF);
+        let c0 = g6 * g * g;
+        let c1 = -2.0 * m * x * g6 * g / self.radius;
+        let c2 = (-2.0 * m * g6 * g + 4.0 * m * (m - 1.0) * x * x * g6) / self.radius.powi(2);
+        let log = x.ln();
+        let (ct, st) = (d.x / r, d.y / r);
+        let mut last = (f64::NAN, 0.0, 0.0);
+        for (f, o) in self.functions.iter().zip(out) {
+            let (a, q) = (f.angular, f.exponent);
+            if last.0 != a {
+                let (s, c) = (a * theta).sin_cos();
+                last = (a, s, c);
+            }
+            let (t, dt) = if f.cosine {
+                (last.2, -a * last.1)
+            } else {
+                (last.1, a * last.2)
+            };
+            let power = (q * log).exp();
+            let radial = (c1 + q * c0 / r) * power * t;
+            let around = c0 * power * dt / r;
+            o.value = c0 * power * t;
+            o.laplacian =
+                (c2 + (2.0 * q + 1.0) * c1 / r + (q * q - a * a) * c0 / (r * r)) * power * t;
+            o.gradient = [radial * ct - around * st, radial * st + around * ct];
+        }
+    }
+}
+
+fn functions(nu: f64, most: f64, curved: bool) -> Vec<Singular> {
+    let mut out: Vec<Singular> = Vec::new();
+    let mut put = |angular: f64, exponent: f64, cosine: bool| {
+        let same = |f: &Singular| {
+            (f.angular - angular).abs() < 1e-9
+                && (f.exponent - exponent).abs() < 1e-9
+                && f.cosine == cosine
+        };
+        if !out.iter().any(same) {
+            out.push(Singular {
+                angular,
+                exponent,
+                cosine,
+            });
+        }
+    };
+    let mut k = 1.0;
+    while k * nu <= most {
+        let alpha = k * nu;
+        k += 1.0;
+        if (alpha - alpha.round()).abs() < 1e-9 {
+            continue;
+        }
+        let mut m = 0;
+        while alpha + f64::from(m) <= most {
+            let exponent = alpha + f64::from(m);
+            if curved {
+                for l in 0..=m / 2 {
+                    let angular = (alpha + f64::from(m - 2 * l)).abs();
+                    put(angular, exponent, false);
+                    if m > 0 {
+                        put(angular, exponent, true);
+                    }
+                }
+            } else if m % 2 == 0 {
+                put(alpha, exponent, false);
+            }
+            m += 1;
+        }
+    }
+    out.sort_by(|a, b| {
+        (a.angular, a.exponent)
+            .partial_cmp(&(b.angular, b.exponent))
+            .unwrap_or(std::cmp::Ordering::Equal)
+    });
+    out
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::geometry::pt;
+
+    #[test]
+    fn laplacian_and_gradient_agree_with_differences() {
+        let corner = Corner {
+            at: pt(0.1, 0.2),
+            angle: 1.5 * PI,
+            direction: 0.4,
+            curvatures: [0.5, 0.0],
+            place: (0, 0),
+        };
+        let c = CornerSpace::new(&corner, 0.7, 4.0, [0, 1]);
+        let n = c.functions.len();
+        let at = |p| {
+            let mut v = vec![Value::default(); n];
+            c.eval(p, &mut v);
+            v
+        };
+        let (p, e) = (pt(0.35, 0.4), 1e-4);
+        let v = at(p);
+        let [e0, w, no, s] = [pt(e, 0.), pt(-e, 0.), pt(0., e), pt(0., -e)].map(|d| at(p + d));
+        for k in 0..n {
+            let dx = (e0[k].value - w[k].value) / (2.0 * e);
+            let lap =
+                (e0[k].value + w[k].value + no[k].value + s[k].value - 4.0 * v[k].value) / (e * e);
+            assert!((dx - v[k].gradient[0]).abs() < 1e-5, "{k}");
+            assert!(
+                (lap - v[k].laplacian).abs() < 1e-4,
+                "{k} {lap} {}",
+                v[k].laplacian
+            );
+        }
+    }
+}
