@@ -4,6 +4,7 @@
 //! `units → progress → geometry → intake → shape → lattice → operators → eigen → spectrum →
 //! modes → figures → pictures → report → desk, cli`.
 
+pub mod cli;
 pub mod desk;
 pub mod eigen;
 pub mod geometry;

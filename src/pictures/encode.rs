@@ -78,7 +78,7 @@ impl Picture {
 
 /// Writes `bytes` beside `path` and renames. A link keeps pointing to its file; a pipe or a device
 /// is written straight.
-fn write_whole(path: &Path, bytes: &[u8]) -> io::Result<()> {
+pub fn write_whole(path: &Path, bytes: &[u8]) -> io::Result<()> {
     let target = fs::canonicalize(path).unwrap_or_else(|_| path.to_owned());
     if let Ok(there) = fs::metadata(&target) {
         if there.is_dir() {

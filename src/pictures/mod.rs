@@ -19,6 +19,7 @@ mod theme;
 mod ticks;
 
 pub use encode::Picture;
+pub(crate) use encode::write_whole;
 pub use map::map;
 pub use sheet::sheet;
 pub use theme::Theme;
