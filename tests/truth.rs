@@ -60,8 +60,8 @@ fn tables() {
                 total += 1;
                 if d > l.error + 1e-12 * e { miss += 1; }
                 over.push(l.error / d.max(1e-13 * e));
-                let eta2 = l.error / 0.1;
-                ratio.push((l.energy + 0.04 * eta2 - e) / eta2);
+                let eta2 = l.error / dotwright::spectrum::bars::SPREAD;
+                ratio.push((l.energy + dotwright::spectrum::bars::SHIFT * eta2 - e) / eta2);
             }
             if std::env::var_os("DW_TRACE").is_some() { eprintln!("  {name} {:.0} ms n {} {:?} {:?}", t, s.lattice.unknowns, s.timings, s.notes); }
         }
@@ -69,5 +69,30 @@ fn tables() {
         ratio.sort_by(f64::total_cmp);
         let q = |v: &Vec<f64>, x: f64| v[((v.len() - 1) as f64 * x) as usize];
         println!("{name:16} worst {worst:.1e}  missed {miss} of {total}  over median {:.1}  err/eta2 min {:.3} 5% {:.3} median {:.3} 99% {:.3} max {:.3}", q(&over, 0.5), q(&ratio, 0.0), q(&ratio, 0.05), q(&ratio, 0.5), q(&ratio, 0.99), q(&ratio, 1.0));
+    }
+}
+
+#[test]
+fn features() {
+    let acc: f64 = std::env::var("ACC").ok().and_then(|s| s.parse().ok()).unwrap_or(1e-6);
+    for r in [0.1, 0.05, 0.02] {
+        // L with its inner corner rounded
+        let line = |a: (f64, f64), b: (f64, f64)| Piece::Line { from: pt(a.0, a.1), to: pt(b.0, b.1) };
+        let o = Outline { loops: vec![Loop { pieces: vec![
+            line((0., 1.), (-1., 1.)), line((-1., 1.), (-1., -1.)), line((-1., -1.), (1., -1.)), line((1., -1.), (1., 0.)), line((1., 0.), (r, 0.)),
+            arc((r, r), r, -PI / 2.0, -PI / 2.0), line((0., r), (0., 1.))] }] };
+        let mut last: Vec<f64> = vec![];
+        for a in [acc, 1e-8] {
+            let clock = std::time::Instant::now();
+            let s = solve(&o, 1.0, &Wanted { count: 20, accuracy: a, ..Wanted::default() }, None, &Watch::quiet()).unwrap();
+            let t = clock.elapsed().as_secs_f64() * 1e3;
+            let worst = s.levels.iter().map(|l| l.error / l.energy).fold(0.0, f64::max);
+            if !last.is_empty() {
+                let d = s.levels.iter().zip(&last).map(|(l, e)| (l.energy - e).abs() / e).fold(0.0, f64::max);
+                println!("rounded {r}: difference {d:.1e}");
+            }
+            println!("rounded {r} acc {a:.0e}: n {} finest {:.4} bar {worst:.1e} {t:.0} ms first {:.10} {:?}", s.lattice.unknowns, s.lattice.finest, s.levels[0].energy, s.timings);
+            last = s.levels.iter().map(|l| l.energy).collect();
+        }
     }
 }

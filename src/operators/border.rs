@@ -7,19 +7,15 @@
 use super::assemble::expand;
 use super::wall::{Traces, WallPoint, beta, points, points_needed};
 use crate::geometry::{Piece, Point};
-use crate::lattice::{Cell, Cloud, CornerSpace, Lattice, Part, Value, clouds, gauss};
+use crate::lattice::{Cell, Cloud, CornerSpace, Lattice, Part, Value, clouds, gauss, spline};
 
 /// Corner functions sampled on the rule of one cell.
-#[derive(Clone, Debug)]
-pub struct Sampled {
-    /// The rule.
-    pub cloud: Cloud,
+struct Sampled {
+    cloud: Cloud,
     /// Functions alive in the cell, numbered through the corners.
-    pub functions: Vec<u32>,
-    /// ψ, `[point * functions + f]`.
-    pub values: Vec<f64>,
-    /// Δψ, same layout.
-    pub laplacians: Vec<f64>,
+    functions: Vec<u32>,
+    /// Δψ of all functions, then ψ of all, at each point.
+    values: Vec<f64>,
 }
 
 /// Couplings of the corner functions, in reduced units.
@@ -37,8 +33,6 @@ pub struct Border {
     pub own_mass: Vec<f64>,
     /// |S − Sᵀ| / |S|: zero but for quadrature; the proof that all terms are right.
     pub asymmetry: f64,
-    /// The samples, kept for the residual.
-    pub sampled: Vec<Sampled>,
 }
 
 impl Border {
@@ -74,7 +68,6 @@ pub fn border(lattice: &Lattice, corners: Vec<CornerSpace>) -> Border {
         own_stiffness: vec![0.0; q * q],
         own_mass: vec![0.0; q * q],
         asymmetry: 0.0,
-        sampled: Vec::new(),
         corners,
     };
     let list = clouds(
@@ -87,7 +80,6 @@ pub fn border(lattice: &Lattice, corners: Vec<CornerSpace>) -> Border {
         let sampled = sample(&out.corners, &first, cloud);
         out.volume(lattice, &sampled);
         out.walls(lattice, &first, &sampled);
-        out.sampled.push(sampled);
     }
     out.symmetrise();
     out
@@ -100,21 +92,20 @@ fn sample(corners: &[CornerSpace], first: &[usize], cloud: Cloud) -> Sampled {
         .flat_map(|&c| first[c as usize] as u32..first[c as usize + 1] as u32)
         .collect();
     let nf = functions.len();
-    let mut values = vec![0.0; cloud.points.len() * nf];
-    let mut laplacians = values.clone();
+    let mut values = vec![0.0; cloud.points.len() * 2 * nf];
     let mut buffer = vec![Value::default(); nf];
-    for (k, p) in cloud.points.iter().enumerate() {
+    for (row, p) in values.chunks_exact_mut(2 * nf).zip(&cloud.points) {
         eval_all(corners, &cloud.corners, *p, &mut buffer);
-        for (f, b) in buffer.iter().enumerate() {
-            values[k * nf + f] = b.value;
-            laplacians[k * nf + f] = b.laplacian;
+        let (laplacians, psis) = row.split_at_mut(nf);
+        for ((l, v), b) in laplacians.iter_mut().zip(psis).zip(&buffer) {
+            *l = b.laplacian;
+            *v = b.value;
         }
     }
     Sampled {
         cloud,
         functions,
         values,
-        laplacians,
     }
 }
 
@@ -130,71 +121,37 @@ fn eval_all(corners: &[CornerSpace], list: &[u32], p: Point, out: &mut [Value]) 
 
 impl Border {
     fn volume(&mut self, lattice: &Lattice, s: &Sampled) {
-        let (n, i, j) = s.cloud.cell;
-        let region = &lattice.regions[n];
-        let low = region.low(i, j);
         let nf = s.functions.len();
         let q = self.len();
-        let mut traces = Traces::new(lattice.degree);
-        let b = traces.value.len();
-        let (mut k, mut m) = (vec![0.0; b * nf], vec![0.0; b * nf]);
-        let (mut sk, mut sm) = (vec![0.0; nf * nf], vec![0.0; nf * nf]);
+        let b = (lattice.degree + 1).pow(2);
+        let mut block = vec![0.0; b * 2 * nf];
+        let mut own = vec![0.0; nf * 2 * nf];
         pulp::Arch::new().dispatch(|| {
-            for (x, (p, &w)) in s.cloud.points.iter().zip(&s.cloud.weights).enumerate() {
-                let (v, l) = (&s.values[x * nf..][..nf], &s.laplacians[x * nf..][..nf]);
-                traces.values_at(*p, low, region.h);
-                for (c, value) in traces.value.iter().enumerate() {
-                    add_two(
-                        &mut k[c * nf..][..nf],
-                        &mut m[c * nf..][..nf],
-                        w * value,
-                        l,
-                        v,
-                    );
-                }
-                for (f, value) in v.iter().enumerate() {
-                    add_two(
-                        &mut sk[f * nf..][..nf],
-                        &mut sm[f * nf..][..nf],
-                        w * value,
-                        l,
-                        v,
-                    );
+            if s.cloud.side > 0 {
+                tensor_block(lattice, s, &mut block);
+            } else {
+                free_block(lattice, s, &mut block);
+            }
+            for (row, &w) in s.values.chunks_exact(2 * nf).zip(&s.cloud.weights) {
+                for f in 0..nf {
+                    axpy(&mut own[f * 2 * nf..][..2 * nf], w * row[nf + f], row);
                 }
             }
         });
-        self.scatter(lattice, s.cloud.cell, &s.functions, &k, -1.0, false);
-        self.scatter(lattice, s.cloud.cell, &s.functions, &m, 1.0, true);
+        let half = |at: usize, sign: f64| -> Vec<f64> {
+            block
+                .chunks_exact(2 * nf)
+                .flat_map(|c| c[at..at + nf].iter().map(|x| sign * x))
+                .collect()
+        };
+        let (k, m) = (half(0, -1.0), half(nf, 1.0));
+        scatter(lattice, s, &k, &mut self.stiffness);
+        scatter(lattice, s, &m, &mut self.mass);
         for (a, &f) in s.functions.iter().enumerate() {
             for (c, &g) in s.functions.iter().enumerate() {
-                self.own_stiffness[f as usize * q + g as usize] -= sk[a * nf + c];
-                self.own_mass[f as usize * q + g as usize] += sm[a * nf + c];
-            }
-        }
-    }
-
-    fn scatter(
-        &mut self,
-        lattice: &Lattice,
-        (n, i, j): (usize, usize, usize),
-        functions: &[u32],
-        block: &[f64],
-        sign: f64,
-        mass: bool,
-    ) {
-        let space = &lattice.spaces[n];
-        let (m, nf) = (lattice.degree + 1, functions.len());
-        let first = space.first_spline(i, j);
-        let to = if mass {
-            &mut self.mass
-        } else {
-            &mut self.stiffness
-        };
-        for c in 0..m * m {
-            for (u, x) in expand(space, first + (c / m) * space.size[1] + c % m) {
-                for (f, v) in functions.iter().zip(&block[c * nf..][..nf]) {
-                    to[*f as usize][u as usize] += sign * x * v;
-                }
+                let to = f as usize * q + g as usize;
+                self.own_stiffness[to] -= own[a * 2 * nf + c];
+                self.own_mass[to] += own[a * 2 * nf + nf + c];
             }
         }
     }
@@ -231,7 +188,7 @@ impl Border {
                 }
             }
         }
-        self.scatter(lattice, s.cloud.cell, &s.functions, &k, 1.0, false);
+        scatter(lattice, s, &k, &mut self.stiffness);
     }
 
     /// Points on a part: none where every function vanishes, graded towards the corners the
@@ -311,10 +268,70 @@ impl Border {
     }
 }
 
+/// Adds a cell's block [spline][function] to the vectors of its functions.
+fn scatter(lattice: &Lattice, s: &Sampled, block: &[f64], to: &mut [Vec<f64>]) {
+    let (n, i, j) = s.cloud.cell;
+    let space = &lattice.spaces[n];
+    let (m, nf) = (lattice.degree + 1, s.functions.len());
+    let first = space.first_spline(i, j);
+    for c in 0..m * m {
+        for (u, x) in expand(space, first + (c / m) * space.size[1] + c % m) {
+            for (f, v) in s.functions.iter().zip(&block[c * nf..][..nf]) {
+                to[*f as usize][u as usize] += x * v;
+            }
+        }
+    }
+}
+
+/// Splines against functions on a tensor rule, one direction after the other.
 #[inline(always)]
-fn add_two(k: &mut [f64], m: &mut [f64], f: f64, l: &[f64], v: &[f64]) {
-    for ((k, m), (l, v)) in k.iter_mut().zip(m).zip(l.iter().zip(v)) {
-        *k += f * l;
-        *m += f * v;
+fn tensor_block(lattice: &Lattice, s: &Sampled, out: &mut [f64]) {
+    let (m, n) = (lattice.degree + 1, s.cloud.side);
+    let wide = 2 * s.functions.len();
+    let rule = gauss::rule(n);
+    let mut b = vec![0.0; n * m];
+    for (b, x) in b.chunks_exact_mut(m).zip(&rule.x) {
+        spline::eval(lattice.degree, 0.5 * (1.0 + x), 0, b);
+    }
+    let mut line = vec![0.0; m * wide];
+    for r in 0..n {
+        line.fill(0.0);
+        for q in 0..n {
+            let k = q * n + r;
+            let row = &s.values[k * wide..][..wide];
+            for a in 0..m {
+                axpy(&mut line[a * wide..][..wide], s.cloud.weights[k] * b[q * m + a], row);
+            }
+        }
+        for a in 0..m {
+            for c in 0..m {
+                let to = &mut out[(a * m + c) * wide..][..wide];
+                axpy(to, b[r * m + c], &line[a * wide..][..wide]);
+            }
+        }
+    }
+}
+
+/// Splines against functions on any points.
+#[inline(always)]
+fn free_block(lattice: &Lattice, s: &Sampled, out: &mut [f64]) {
+    let (n, i, j) = s.cloud.cell;
+    let region = &lattice.regions[n];
+    let low = region.low(i, j);
+    let wide = 2 * s.functions.len();
+    let mut traces = Traces::new(lattice.degree);
+    let points = s.cloud.points.iter().zip(&s.cloud.weights);
+    for (row, (p, &w)) in s.values.chunks_exact(wide).zip(points) {
+        traces.values_at(*p, low, region.h);
+        for (to, v) in out.chunks_exact_mut(wide).zip(&traces.value) {
+            axpy(to, w * v, row);
+        }
+    }
+}
+
+#[inline(always)]
+fn axpy(to: &mut [f64], f: f64, x: &[f64]) {
+    for (t, x) in to.iter_mut().zip(x) {
+        *t += f * x;
     }
 }

@@ -13,7 +13,7 @@ mod tables;
 mod wall;
 
 pub use assemble::{Pair, assemble};
-pub use border::{Border, Sampled, border};
+pub use border::{Border, border};
 pub use residual::{Functions, Residual, residual};
 pub use tables::Tables;
 pub use wall::{Traces, WallPoint, beta, points as wall_points};

@@ -3,7 +3,7 @@
 /// The reported value is λ − SHIFT·η²: computed levels lie above the true ones.
 pub const SHIFT: f64 = 0.04;
 /// The error bar is SPREAD·η² around the reported value.
-pub const SPREAD: f64 = 0.10;
+pub const SPREAD: f64 = 0.06;
 /// Relative floor of the bar: rounding in assembly and factorisation.
 pub const FLOOR: f64 = 2e-11;
 
