@@ -28,8 +28,8 @@ pub struct Cloud {
 /// Cells with their centre this many cells from a corner get the homogeneous rule.
 const NEAR: f64 = 1.6;
 /// Points of the homogeneous rule along σ and along a stretch.
-const SIGMA: usize = 14;
-const TAU: usize = 16;
+const SIGMA: usize = 12;
+const TAU: usize = 14;
 
 /// Clouds of all cells that the corners reach.
 pub fn clouds(
@@ -114,7 +114,9 @@ fn tensor(
             let level = r.level;
             let ci = r.corner[0] + i as i32;
             let edge = trace.crossings(0, ci >> level, trace.grid.line(level, 0, ci + 1));
-            Fitter::new(n).weights(&trace.pieces, &cut.parts, low, r.h, &edge).0
+            Fitter::new(n)
+                .weights(&trace.pieces, &cut.parts, low, r.h, &edge)
+                .0
         }
         _ => (0..n * n)
             .map(|k| 0.25 * r.h * r.h * rule.w[k / n] * rule.w[k % n])

@@ -143,7 +143,8 @@ fn samples(outline: &Outline, h: f64) -> (Vec<Sample>, Near) {
             let bent = !matches!(piece, Piece::Line { .. });
             near.bent.push(bent);
             let end = first + l.pieces.len();
-            near.next.push(if number + 1 == end { first } else { number + 1 });
+            near.next
+                .push(if number + 1 == end { first } else { number + 1 });
             let long = (0..8)
                 .map(|k| piece.velocity((f64::from(k) + 0.5) / 8.0).norm() / 8.0)
                 .sum::<f64>();

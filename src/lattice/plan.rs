@@ -65,7 +65,12 @@ impl Plan {
                     reach: free,
                 });
             }
-            corners.push(CornerSpace::new(&corner, free, p_most(demand.degree), edges));
+            corners.push(CornerSpace::new(
+                &corner,
+                free,
+                p_most(demand.degree),
+                edges,
+            ));
         }
         split_for(&grid, &list, &mut splits);
         Self {
@@ -119,8 +124,8 @@ fn free_radius(outline: &Outline, corner: &Corner, most: f64) -> f64 {
     for (l, lp) in outline.loops.iter().enumerate() {
         let n = lp.pieces.len();
         for (k, piece) in lp.pieces.iter().enumerate() {
-            let own = l == corner.place.0
-                && (k == corner.place.1 || k == (corner.place.1 + n - 1) % n);
+            let own =
+                l == corner.place.0 && (k == corner.place.1 || k == (corner.place.1 + n - 1) % n);
             let m = match piece {
                 crate::geometry::Piece::Line { .. } => 1,
                 _ => 64,

@@ -46,6 +46,8 @@ pub struct CornerSpace {
     pub functions: Vec<Singular>,
     /// Pieces that start and end here, numbered through the loops.
     pub edges: [u32; 2],
+    /// Largest multiple or shift among the functions.
+    most: usize,
 }
 
 /// Values at one point.
@@ -72,13 +74,16 @@ impl CornerSpace {
     /// The functions of a corner with exponents up to `most`.
     pub fn new(corner: &Corner, radius: f64, most: f64, edges: [u32; 2]) -> Self {
         let curved = corner.curvatures.iter().any(|c| (c * radius).abs() > 1e-9);
+        let functions = functions(PI / corner.angle, most, curved);
+        let most = functions.iter().map(|f| f.k.max(f.rise)).max().unwrap_or(0) as usize;
         Self {
             at: corner.at,
             direction: corner.direction,
             angle: corner.angle,
             radius,
-            functions: functions(PI / corner.angle, most, curved),
+            functions,
             edges,
+            most,
         }
     }
 
@@ -88,6 +93,7 @@ impl CornerSpace {
     }
 
     /// All functions at a point; zero beyond the radius. `out.len()` is the number of functions.
+    #[inline(always)]
     pub fn eval(&self, p: Point, out: &mut [Value]) {
         let d = p - self.at;
         let r = d.norm();
@@ -109,11 +115,14 @@ impl CornerSpace {
         let nu = PI / self.angle;
         // x^kν and e^(ikνθ) by recurrence over k, x^m and e^(imθ) over m
         let base = x.powf(nu);
-        let circles = turns(nu * theta, base);
-        let whole = turns(theta, x);
+        let circles = turns(nu * theta, base, self.most);
+        let whole = turns(theta, x, self.most);
         for (f, o) in self.functions.iter().zip(out) {
             let (a, q) = (f.angular(nu), f.exponent(nu));
-            let (k, m) = (circles[f.k as usize], whole[f.shift.unsigned_abs() as usize]);
+            let (k, m) = (
+                circles[f.k as usize],
+                whole[f.shift.unsigned_abs() as usize],
+            );
             let im = if f.shift < 0 { -m.sin } else { m.sin };
             let (s, c) = (k.sin * m.cos + k.cos * im, k.cos * m.cos - k.sin * im);
             let (t, dt) = if f.cosine { (c, -a * s) } else { (s, a * c) };
@@ -139,14 +148,15 @@ struct Turn {
     cos: f64,
 }
 
-fn turns(phi: f64, x: f64) -> [Turn; MOST] {
+#[inline(always)]
+fn turns(phi: f64, x: f64, most: usize) -> [Turn; MOST] {
     let (s, c) = phi.sin_cos();
     let mut out = [Turn {
         power: 1.0,
         sin: 0.0,
         cos: 1.0,
     }; MOST];
-    for k in 1..MOST {
+    for k in 1..=most {
         let b = out[k - 1];
         out[k] = Turn {
             power: b.power * x,

@@ -132,7 +132,6 @@ impl Space {
     pub fn first_spline(&self, i: usize, j: usize) -> usize {
         i * self.size[1] + j
     }
-
 }
 
 /// Cells on which all splines are inner, and which are themselves not outside.

@@ -45,7 +45,13 @@ impl Modes {
             .iter()
             .map(|c| c.iter().skip(mode).step_by(count).copied().collect())
             .collect();
-        let singular: Vec<f64> = all.corners.iter().skip(mode).step_by(count).copied().collect();
+        let singular: Vec<f64> = all
+            .corners
+            .iter()
+            .skip(mode)
+            .step_by(count)
+            .copied()
+            .collect();
         let mut values = vec![Value::default(); singular.len()];
         let mut line = vec![0.0; p + 1];
         for i in 0..raster.width {
@@ -55,7 +61,9 @@ impl Modes {
             let mut held = None;
             let (mut bx, mut by) = ([0.0; 8], [0.0; 8]);
             for span in crossings.chunks_exact(2) {
-                let j0 = ((span[0] - raster.origin.y) / raster.step.y).ceil().max(0.0);
+                let j0 = ((span[0] - raster.origin.y) / raster.step.y)
+                    .ceil()
+                    .max(0.0);
                 let j1 = ((span[1] - raster.origin.y) / raster.step.y).floor();
                 if j1 < 0.0 {
                     continue;

@@ -5,8 +5,8 @@
 
 use super::tables::Tables;
 use super::wall::Traces;
-use crate::lattice::{Cell, CornerSpace, Key, Lattice, Value, gauss};
 use crate::geometry::{Point, pt};
+use crate::lattice::{Cell, CornerSpace, Key, Lattice, Value, gauss};
 
 /// Coefficients of several functions on a lattice.
 #[derive(Clone, Debug)]
@@ -139,7 +139,10 @@ impl Work {
         for q in 0..n {
             for a in 0..m {
                 let (b0, b2) = (t.at[0][q * m + a], inv * t.at[2][q * m + a]);
-                let (v, w) = (&self.half[0][a * n * l..][..n * l], &self.half[1][a * n * l..][..n * l]);
+                let (v, w) = (
+                    &self.half[0][a * n * l..][..n * l],
+                    &self.half[1][a * n * l..][..n * l],
+                );
                 axpy(&mut self.u[q * n * l..][..n * l], b0, v);
                 axpy(&mut self.lap[q * n * l..][..n * l], b2, v);
                 axpy(&mut self.lap[q * n * l..][..n * l], inv * b0, w);

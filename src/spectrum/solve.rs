@@ -91,7 +91,19 @@ pub fn solve(
         watch.step(round, ATTEMPTS, "lattices")?;
         let attempt = Attempt::new(outline, plan.clone(), window, &mut timings, watch)?;
         let step = next(&attempt, wanted.accuracy);
-        if std::env::var_os("DW_TRACE").is_some() { eprintln!("round {round} h {:.4} n {} regions {} worst bar {:.1e} next {:?}", plan.grid.h, attempt.unknowns, attempt.lattice.regions.len(), attempt.bars.iter().map(|b| b.1 / b.0).fold(0.0, f64::max), match &step { Next::Split(k) => format!("split {}", k.len()), o => format!("{o:?}") }); }
+        if std::env::var_os("DW_TRACE").is_some() {
+            eprintln!(
+                "round {round} h {:.4} n {} regions {} worst bar {:.1e} next {:?}",
+                plan.grid.h,
+                attempt.unknowns,
+                attempt.lattice.regions.len(),
+                attempt.bars.iter().map(|b| b.1 / b.0).fold(0.0, f64::max),
+                match &step {
+                    Next::Split(k) => format!("split {}", k.len()),
+                    o => format!("{o:?}"),
+                }
+            );
+        }
         let insisted = wanted.cell.is_some();
         if step == Next::Done || insisted || round + 1 == ATTEMPTS {
             return Ok(finish(outline, kinetic, wanted, attempt, timings));
@@ -110,7 +122,9 @@ pub fn solve(
             Next::Done => {}
         }
     }
-    Err(SpectrumError::Numerical("no lattice was good enough".into()))
+    Err(SpectrumError::Numerical(
+        "no lattice was good enough".into(),
+    ))
 }
 
 /// Quick levels after a small edit, from the modes of the outline before it (relative error about
@@ -150,11 +164,7 @@ fn finish(
         })
         .collect();
     let mut notes = Vec::new();
-    let worst = a
-        .bars
-        .iter()
-        .map(|b| b.1 / b.0.abs())
-        .fold(0.0, f64::max);
+    let worst = a.bars.iter().map(|b| b.1 / b.0.abs()).fold(0.0, f64::max);
     if worst > wanted.accuracy {
         notes.push(format!(
             "the accuracy asked for, {:.0e}, was not reached everywhere: the largest relative \
