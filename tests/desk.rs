@@ -22,6 +22,7 @@ fn rectangle(width: f64, height: f64) -> Outline {
 fn document(outline: Outline) -> Document {
     Document {
         title: "Slab dot, variant 3".into(),
+        model: "one electron, hard wall".into(),
         stem: "slab-dot".into(),
         outline,
         kinetic: 38.099_821_2 / 0.067,
@@ -284,6 +285,27 @@ fn the_temperature_is_asked_for_and_checked() {
         assert_eq!(desk.state.temperature, 77.0);
         assert!(desk.screen().contains("is no temperature"));
     }
+}
+
+#[test]
+fn maps_are_exported_under_free_names() {
+    let mut desk = Desk::open((80, 24));
+    desk.keys(&[Key::Right]).typed("e");
+    assert!(
+        desk.screen().contains("slab-dot-2-density.png"),
+        "{}",
+        desk.screen()
+    );
+    desk.typed("ede");
+    let folder = desk.state.folder.clone();
+    for name in ["2-density", "2-density-2", "2-wave"] {
+        let bytes = std::fs::read(folder.join(format!("slab-dot-{name}.png")));
+        assert!(bytes.expect("the picture is there").starts_with(b"\x89PNG"));
+    }
+    desk.state.folder = folder.join("no such folder");
+    desk.typed("e");
+    assert!(desk.state.message.as_ref().is_some_and(|m| m.alarm));
+    assert_eq!(desk.state.exporting, None);
 }
 
 #[test]
