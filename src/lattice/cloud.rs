@@ -21,13 +21,15 @@ pub struct Cloud {
     pub points: Vec<Point>,
     /// Weights: area.
     pub weights: Vec<f64>,
+    /// Points a side where they form a tensor rule, `[q * n + r]`; 0 elsewhere.
+    pub side: usize,
 }
 
 /// Cells with their centre this many cells from a corner get the homogeneous rule.
 const NEAR: f64 = 1.6;
 /// Points of the homogeneous rule along σ and along a stretch.
-const SIGMA: usize = 14;
-const TAU: usize = 16;
+const SIGMA: usize = 12;
+const TAU: usize = 14;
 
 /// Clouds of all cells that the corners reach.
 pub fn clouds(
@@ -37,8 +39,6 @@ pub fn clouds(
     degree: usize,
 ) -> Vec<Cloud> {
     let mut out = Vec::new();
-    let fitted = 2 * degree + 7;
-    let mut fitter = Fitter::new(fitted);
     for (n, r) in regions.iter().enumerate() {
         let cells = r
             .inside
@@ -67,6 +67,7 @@ pub fn clouds(
                 corners: reach,
                 points: Vec::new(),
                 weights: Vec::new(),
+                side: 0,
             };
             match near {
                 Some((d, c)) if d < NEAR * r.h => {
@@ -74,7 +75,7 @@ pub fn clouds(
                 }
                 other => {
                     let far = other.map_or(f64::INFINITY, |o| o.0 / r.h);
-                    tensor(trace, r, (i, j), far, degree, &mut fitter, &mut cloud);
+                    tensor(trace, r, (i, j), far, degree, &mut cloud);
                 }
             }
             if !cloud.points.is_empty() {
@@ -91,16 +92,17 @@ fn tensor(
     (i, j): (usize, usize),
     far: f64,
     degree: usize,
-    fitter: &mut Fitter,
     cloud: &mut Cloud,
 ) {
     let low = r.low(i, j);
     // Gauss on an analytic function with its singularity d half-cells off converges like
     // (d + √(d² − 1))^(−2n)
     let n = match r.cell(i as i64, j as i64) {
-        Cell::Cut(_) => 2 * degree + 7,
+        Cell::Cut(_) if far < 3.0 => 2 * degree + 7,
+        Cell::Cut(_) => 2 * degree + 4,
         _ if far < 2.5 => degree + 7,
-        _ => degree + 4,
+        _ if far < 4.0 => degree + 4,
+        _ => degree + 3,
     };
     let rule = gauss::rule(n);
     let weights = match r.cell(i as i64, j as i64) {
@@ -112,12 +114,15 @@ fn tensor(
             let level = r.level;
             let ci = r.corner[0] + i as i32;
             let edge = trace.crossings(0, ci >> level, trace.grid.line(level, 0, ci + 1));
-            fitter.weights(&trace.pieces, &cut.parts, low, r.h, &edge).0
+            Fitter::new(n)
+                .weights(&trace.pieces, &cut.parts, low, r.h, &edge)
+                .0
         }
         _ => (0..n * n)
             .map(|k| 0.25 * r.h * r.h * rule.w[k / n] * rule.w[k % n])
             .collect(),
     };
+    cloud.side = n;
     for (k, w) in weights.into_iter().enumerate() {
         cloud.points.push(pt(
             low[0] + 0.5 * r.h * (1.0 + rule.x[k / n]),

@@ -10,6 +10,8 @@ pub mod spline;
 mod cloud;
 mod cutcell;
 mod face;
+mod feature;
+mod plan;
 mod region;
 mod singular;
 mod space;
@@ -18,6 +20,7 @@ mod tree;
 
 pub use cloud::{Cloud, clouds};
 pub use face::Face;
+pub use plan::{Demand, Plan};
 pub use region::{Cell, Cut, Region};
 pub use singular::{CornerSpace, Singular, Value, is_singular};
 pub use space::{Role, Space, Tie};
@@ -63,32 +66,28 @@ const OFFSET: Point = Point {
     y: 0.618_033_988_749_894,
 };
 
+impl Grid {
+    /// The lattice of cell size `h` over an outline.
+    pub fn over(outline: &Outline, h: f64) -> Self {
+        Self {
+            origin: outline.bounds().lo - OFFSET * h,
+            h,
+        }
+    }
+}
+
 impl Lattice {
-    /// Lays the lattice: cells of size `h`, splines of degree `p`, the given cells split, and
-    /// whatever else must be split for every cut cell to have inner splines near.
+    /// Lays the lattice: splines of degree `p`, the given cells split, and whatever else must be
+    /// split for every cut cell to have inner splines near.
     ///
     /// # Errors
     /// [`LatticeError::Empty`] when no cell lies inside even after splitting.
-    pub fn new(outline: &Outline, h: f64, p: usize, splits: &Splits) -> Result<Self, LatticeError> {
-        Self::placed(outline, h, p, splits, OFFSET)
-    }
-
-    /// As [`Lattice::new`], with the lattice's lines `offset` cells off the outline's corner.
-    ///
-    /// # Errors
-    /// As [`Lattice::new`].
-    pub fn placed(
+    pub fn new(
         outline: &Outline,
-        h: f64,
+        grid: Grid,
         p: usize,
         splits: &Splits,
-        offset: Point,
     ) -> Result<Self, LatticeError> {
-        let low = outline.bounds().lo;
-        let grid = Grid {
-            origin: low - offset * h,
-            h,
-        };
         let trace = Trace::new(outline, grid);
         let mut splits = splits.clone();
         let mut last = false;
@@ -122,7 +121,7 @@ impl Lattice {
                 continue;
             }
             if unknowns == 0 {
-                return Err(LatticeError::Empty(h));
+                return Err(LatticeError::Empty(grid.h));
             }
             let faces = face::faces(&trace, &regions);
             return Ok(Self {

@@ -7,15 +7,28 @@
 use crate::geometry::{Corner, Point};
 use std::f64::consts::{PI, TAU};
 
-/// One function of a corner.
-#[derive(Clone, Copy, Debug, PartialEq)]
+/// One function of a corner: a = kν + shift and s = kν + rise, with ν = π/ω.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct Singular {
-    /// Angular number a.
-    pub angular: f64,
-    /// Exponent s of r.
-    pub exponent: f64,
+    /// Multiple of ν.
+    pub k: u8,
+    /// What is added to kν in the angular number.
+    pub shift: i8,
+    /// What is added to kν in the exponent of r.
+    pub rise: u8,
     /// Cosine instead of sine.
     pub cosine: bool,
+}
+
+impl Singular {
+    /// Angular number a; negative where kν + shift is.
+    pub fn angular(&self, nu: f64) -> f64 {
+        f64::from(self.k) * nu + f64::from(self.shift)
+    }
+    /// Exponent s of r.
+    pub fn exponent(&self, nu: f64) -> f64 {
+        f64::from(self.k) * nu + f64::from(self.rise)
+    }
 }
 
 /// A corner with its functions, alive in the disc of radius ρ.
@@ -33,6 +46,8 @@ pub struct CornerSpace {
     pub functions: Vec<Singular>,
     /// Pieces that start and end here, numbered through the loops.
     pub edges: [u32; 2],
+    /// Largest multiple or shift among the functions.
+    most: usize,
 }
 
 /// Values at one point.
@@ -59,13 +74,16 @@ impl CornerSpace {
     /// The functions of a corner with exponents up to `most`.
     pub fn new(corner: &Corner, radius: f64, most: f64, edges: [u32; 2]) -> Self {
         let curved = corner.curvatures.iter().any(|c| (c * radius).abs() > 1e-9);
+        let functions = functions(PI / corner.angle, most, curved);
+        let most = functions.iter().map(|f| f.k.max(f.rise)).max().unwrap_or(0) as usize;
         Self {
             at: corner.at,
             direction: corner.direction,
             angle: corner.angle,
             radius,
-            functions: functions(PI / corner.angle, most, curved),
+            functions,
             edges,
+            most,
         }
     }
 
@@ -75,6 +93,7 @@ impl CornerSpace {
     }
 
     /// All functions at a point; zero beyond the radius. `out.len()` is the number of functions.
+    #[inline(always)]
     pub fn eval(&self, p: Point, out: &mut [Value]) {
         let d = p - self.at;
         let r = d.norm();
@@ -92,76 +111,110 @@ impl CornerSpace {
         let c0 = g6 * g * g;
         let c1 = -2.0 * m * x * g6 * g / self.radius;
         let c2 = (-2.0 * m * g6 * g + 4.0 * m * (m - 1.0) * x * x * g6) / self.radius.powi(2);
-        let log = x.ln();
         let (ct, st) = (d.x / r, d.y / r);
-        let mut last = (f64::NAN, 0.0, 0.0);
+        let nu = PI / self.angle;
+        // x^kν and e^(ikνθ) by recurrence over k, x^m and e^(imθ) over m
+        let base = x.powf(nu);
+        let circles = turns(nu * theta, base, self.most);
+        let whole = turns(theta, x, self.most);
         for (f, o) in self.functions.iter().zip(out) {
-            let (a, q) = (f.angular, f.exponent);
-            if last.0 != a {
-                let (s, c) = (a * theta).sin_cos();
-                last = (a, s, c);
-            }
-            let (t, dt) = if f.cosine {
-                (last.2, -a * last.1)
-            } else {
-                (last.1, a * last.2)
-            };
-            let power = (q * log).exp();
+            let (a, q) = (f.angular(nu), f.exponent(nu));
+            let (k, m) = (
+                circles[f.k as usize],
+                whole[f.shift.unsigned_abs() as usize],
+            );
+            let im = if f.shift < 0 { -m.sin } else { m.sin };
+            let (s, c) = (k.sin * m.cos + k.cos * im, k.cos * m.cos - k.sin * im);
+            let (t, dt) = if f.cosine { (c, -a * s) } else { (s, a * c) };
+            let power = k.power * whole[f.rise as usize].power;
             let radial = (c1 + q * c0 / r) * power * t;
-            let around = c0 * power * dt / r;
+            let sideways = c0 * power * dt / r;
             o.value = c0 * power * t;
             o.laplacian =
                 (c2 + (2.0 * q + 1.0) * c1 / r + (q * q - a * a) * c0 / (r * r)) * power * t;
-            o.gradient = [radial * ct - around * st, radial * st + around * ct];
+            o.gradient = [radial * ct - sideways * st, radial * st + sideways * ct];
         }
     }
 }
 
+/// Largest k or m of a function.
+const MOST: usize = 16;
+
+/// x^k and e^(ikφ).
+#[derive(Clone, Copy, Default)]
+struct Turn {
+    power: f64,
+    sin: f64,
+    cos: f64,
+}
+
+#[inline(always)]
+fn turns(phi: f64, x: f64, most: usize) -> [Turn; MOST] {
+    let (s, c) = phi.sin_cos();
+    let mut out = [Turn {
+        power: 1.0,
+        sin: 0.0,
+        cos: 1.0,
+    }; MOST];
+    for k in 1..=most {
+        let b = out[k - 1];
+        out[k] = Turn {
+            power: b.power * x,
+            sin: b.sin * c + b.cos * s,
+            cos: b.cos * c - b.sin * s,
+        };
+    }
+    out
+}
+
 fn functions(nu: f64, most: f64, curved: bool) -> Vec<Singular> {
     let mut out: Vec<Singular> = Vec::new();
-    let mut put = |angular: f64, exponent: f64, cosine: bool| {
-        let same = |f: &Singular| {
-            (f.angular - angular).abs() < 1e-9
-                && (f.exponent - exponent).abs() < 1e-9
-                && f.cosine == cosine
+    let mut put = |f: Singular| {
+        let same = |g: &Singular| {
+            (g.angular(nu).abs() - f.angular(nu).abs()).abs() < 1e-9
+                && (g.exponent(nu) - f.exponent(nu)).abs() < 1e-9
+                && g.cosine == f.cosine
         };
         if !out.iter().any(same) {
-            out.push(Singular {
-                angular,
-                exponent,
-                cosine,
-            });
+            out.push(f);
         }
     };
-    let mut k = 1.0;
-    while k * nu <= most {
-        let alpha = k * nu;
-        k += 1.0;
+    for k in 1..MOST as u8 {
+        let alpha = f64::from(k) * nu;
+        if alpha > most {
+            break;
+        }
         if (alpha - alpha.round()).abs() < 1e-9 {
             continue;
         }
-        let mut m = 0;
-        while alpha + f64::from(m) <= most {
-            let exponent = alpha + f64::from(m);
+        for rise in 0..MOST as u8 {
+            if alpha + f64::from(rise) > most {
+                break;
+            }
             if curved {
-                for l in 0..=m / 2 {
-                    let angular = (alpha + f64::from(m - 2 * l)).abs();
-                    put(angular, exponent, false);
-                    if m > 0 {
-                        put(angular, exponent, true);
+                for l in 0..=rise / 2 {
+                    let shift = rise as i8 - 2 * l as i8;
+                    for cosine in [false, true] {
+                        if !cosine || rise > 0 {
+                            put(Singular {
+                                k,
+                                shift,
+                                rise,
+                                cosine,
+                            });
+                        }
                     }
                 }
-            } else if m % 2 == 0 {
-                put(alpha, exponent, false);
+            } else if rise % 2 == 0 {
+                put(Singular {
+                    k,
+                    shift: 0,
+                    rise,
+                    cosine: false,
+                });
             }
-            m += 1;
         }
     }
-    out.sort_by(|a, b| {
-        (a.angular, a.exponent)
-            .partial_cmp(&(b.angular, b.exponent))
-            .unwrap_or(std::cmp::Ordering::Equal)
-    });
     out
 }
 

@@ -132,22 +132,6 @@ impl Space {
     pub fn first_spline(&self, i: usize, j: usize) -> usize {
         i * self.size[1] + j
     }
-
-    /// Coefficients of all splines of the region from the unknowns `x` of the whole problem.
-    pub fn extend<T: crate::units::Scalar>(&self, x: &[T]) -> Vec<T> {
-        self.roles
-            .iter()
-            .map(|r| match *r {
-                Role::Dead => T::default(),
-                Role::Inner(u) => x[u as usize],
-                Role::Outer(t) => self.ties[t as usize]
-                    .terms
-                    .iter()
-                    .map(|&(u, c)| x[u as usize].scale(c))
-                    .sum(),
-            })
-            .collect()
-    }
 }
 
 /// Cells on which all splines are inner, and which are themselves not outside.

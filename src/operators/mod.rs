@@ -8,10 +8,12 @@ mod band;
 mod border;
 mod cell;
 mod glue;
+mod residual;
 mod tables;
 mod wall;
 
 pub use assemble::{Pair, assemble};
-pub use border::{Border, Sampled, border};
+pub use border::{Border, border};
+pub use residual::{Functions, Residual, residual};
 pub use tables::Tables;
 pub use wall::{Traces, WallPoint, beta, points as wall_points};
