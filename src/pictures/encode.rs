@@ -69,9 +69,9 @@ impl Picture {
     /// [`PictureError::Encode`] or [`PictureError::Write`].
     pub fn save(&self, path: &Path) -> Result<(), PictureError> {
         let bytes = self.png()?;
-        write_whole(path, &bytes).map_err(|source| PictureError::Write {
+        write_whole(path, &bytes).map_err(|cause| PictureError::Write {
             path: path.to_owned(),
-            source,
+            cause,
         })
     }
 }
@@ -102,11 +102,21 @@ pub fn write_whole(path: &Path, bytes: &[u8]) -> io::Result<()> {
     };
     #[cfg(unix)]
     builder.permissions(mode);
-    let mut part = builder.tempfile_in(folder)?;
+    let mut part = builder.tempfile_in(folder).map_err(bare)?;
     part.write_all(bytes)?;
     part.as_file().sync_all()?;
     part.persist(&target).map_err(|e| e.error)?;
     Ok(())
+}
+
+/// The system's error without the name of the part file, which is nobody's concern.
+fn bare(error: io::Error) -> io::Error {
+    let inner = error
+        .get_ref()
+        .and_then(|e| e.source())
+        .and_then(|e| e.downcast_ref::<io::Error>())
+        .and_then(io::Error::raw_os_error);
+    inner.map_or(error, io::Error::from_raw_os_error)
 }
 
 #[cfg(test)]

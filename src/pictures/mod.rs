@@ -126,15 +126,15 @@ pub enum PictureError {
     #[error("the outline has no extent, so there is nothing to draw")]
     Empty,
     /// The encoder failed.
-    #[error("the picture cannot be encoded: {0}")]
+    #[error("the picture cannot be encoded")]
     Encode(#[from] png::EncodingError),
     /// The disk refused.
-    #[error("{}: cannot be written: {source}", path.display())]
+    #[error("{}: cannot be written: {cause}", path.display())]
     Write {
         /// Where to.
         path: PathBuf,
         /// What the system said.
-        source: io::Error,
+        cause: io::Error,
     },
 }
 
