@@ -138,25 +138,44 @@ impl Paint {
     }
 }
 
-/// The entry of the fixed 256 palette (colour cube and grey ramp) closest to a colour.
+/// The entry of the fixed 256 palette (colour cube and grey ramp) that looks closest to a colour.
 fn nearest(c: Rgb) -> u8 {
     const CUBE: [u8; 6] = [0, 95, 135, 175, 215, 255];
-    let far = |p: Rgb| {
-        let d = |a: u8, b: u8| (f64::from(a) - f64::from(b)).powi(2);
-        // weights near those of the eye's three receptors keep hues from tipping over
-        3.0 * d(p[0], c[0]) + 5.0 * d(p[1], c[1]) + 2.0 * d(p[2], c[2])
-    };
     let cube = (0..216u8).map(|i| {
         let at = |k: u8| CUBE[usize::from(k % 6)];
         (16 + i, [at(i / 36), at(i / 6), at(i)])
     });
-    let grey = (0..24u8).map(|i| {
-        let v = 8 + 10 * i;
-        (232 + i, [v, v, v])
-    });
+    let grey = (0..24u8).map(|i| (232 + i, [8 + 10 * i; 3]));
+    let wanted = oklab(c);
+    let far = |p: Rgb| {
+        let [l, a, b] = oklab(p);
+        // a step in lightness is seen less than a hue that tips over
+        (l - wanted[0]).powi(2) + HUE * ((a - wanted[1]).powi(2) + (b - wanted[2]).powi(2))
+    };
+    const HUE: f64 = 3.0;
     cube.chain(grey)
         .min_by(|a, b| far(a.1).total_cmp(&far(b.1)))
         .map_or(16, |hit| hit.0)
+}
+
+/// Oklab coordinates of an sRGB colour (B. Ottosson, 2020).
+fn oklab(c: Rgb) -> [f64; 3] {
+    let [r, g, b] = c.map(|v| {
+        let v = f64::from(v) / 255.0;
+        if v <= 0.040_45 {
+            v / 12.92
+        } else {
+            ((v + 0.055) / 1.055).powf(2.4)
+        }
+    });
+    let l = (0.412_221_470_8 * r + 0.536_332_536_3 * g + 0.051_445_992_9 * b).cbrt();
+    let m = (0.211_903_498_2 * r + 0.680_699_545_1 * g + 0.107_396_956_6 * b).cbrt();
+    let s = (0.088_302_461_9 * r + 0.281_718_837_6 * g + 0.629_978_700_5 * b).cbrt();
+    [
+        0.210_454_255_3 * l + 0.793_617_785_0 * m - 0.004_072_046_8 * s,
+        1.977_998_495_1 * l - 2.428_592_205_0 * m + 0.450_593_709_9 * s,
+        0.025_904_037_1 * l + 0.782_771_766_2 * m - 0.808_675_766_0 * s,
+    ]
 }
 
 #[cfg(test)]

@@ -229,13 +229,14 @@ fn press(state: &mut State, key: Key) -> Vec<Job> {
         return perform(state, deed);
     }
     match (&mut state.overlay, key) {
-        (Some(Overlay::Question(_, text)), Key::Char(c)) => {
-            if text.len() < 24 && c.is_ascii_graphic() {
-                text.push(c);
-            }
+        (Some(Overlay::Question(_, text)), Key::Char(c))
+            if text.len() < 24 && c.is_ascii_graphic() =>
+        {
+            text.push(c);
         }
         (Some(Overlay::Question(_, text)), Key::Backspace) => {
-            if text.pop().is_none() {
+            let was_empty = text.pop().is_none();
+            if was_empty {
                 state.overlay = None;
             }
         }

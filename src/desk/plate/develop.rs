@@ -173,7 +173,7 @@ impl Cell<'_> {
     /// that no shade shows beyond the line.
     fn body(&self, look: &Look) -> Option<Color> {
         let (tone, share) = self.mean(0..4)?;
-        (look.glyphs == Glyphs::HalfBlock && share > 0.7).then(|| self.colour(tone, look))
+        (look.glyphs == Glyphs::HalfBlock && share > 0.8).then(|| self.colour(tone, look))
     }
 
     fn halves(&self, look: &Look) -> Drawn {
