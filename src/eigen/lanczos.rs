@@ -108,9 +108,37 @@ impl<'a, T: Number> Lanczos<'a, T> {
                 *s += *c;
             }
         }
+        let r = match self.cholesky_qr(&mut w, b) {
+            Some(r) => r,
+            None => self.gram_schmidt(&mut w, b),
+        };
+        (coefficients, r)
+    }
+
+    /// Orthonormalises a block by the Cholesky factor of its Gram matrix and appends it; `None`,
+    /// with nothing appended, when its vectors are too nearly dependent for that.
+    fn cholesky_qr(&mut self, w: &mut [T], b: usize) -> Option<Vec<T>> {
+        let n = self.n;
+        let mut mw = vec![T::default(); n * b];
+        multiply(self.mass, w, &mut mw, b);
+        let g = project(&mw, b, w, b, n);
+        let r = upper_cholesky(&g, b)?;
+        let inverse = upper_inverse(&r, b);
+        for x in [(&*w, &mut self.v), (&mw, &mut self.mv)] {
+            let at = x.1.len();
+            x.1.resize(at + n * b, T::default());
+            combine(&mut x.1[at..], b, x.0, b, &inverse, n, 1.0);
+        }
+        Some(r)
+    }
+
+    /// Orthonormalises and appends vector by vector, twice each; a direction that vanishes is
+    /// replaced by noise and gets a zero in R.
+    fn gram_schmidt(&mut self, w: &mut [T], b: usize) -> Vec<T> {
+        let n = self.n;
+        let m = self.len();
         let mut r = vec![T::default(); b * b];
         for (i, diagonal) in (0..b).map(|i| (i, i * b + i)) {
-            // Gram–Schmidt within the block, twice; a direction that vanishes is replaced by noise
             let mut replaced = false;
             let first = loop {
                 let first = self.norm(&w[i * n..(i + 1) * n]);
@@ -151,7 +179,7 @@ impl<'a, T: Number> Lanczos<'a, T> {
             self.mv
                 .extend(mx.into_iter().map(|x| Scalar::scale(x, inv)));
         }
-        (coefficients, r)
+        r
     }
 
     /// M-norm of a vector, and M times it.
@@ -297,4 +325,40 @@ impl<'a, T: Number> Lanczos<'a, T> {
         }
         Err(EigenError::Failed("no convergence".into()))
     }
+}
+
+/// R of G = RᴴR, by columns; `None` when a pivot is below a millionth of its diagonal entry.
+fn upper_cholesky<T: Number>(g: &[T], b: usize) -> Option<Vec<T>> {
+    let mut r = vec![T::default(); b * b];
+    for j in 0..b {
+        for i in 0..=j {
+            let s: T = (0..i)
+                .map(|k| Scalar::conj(r[i * b + k]) * r[j * b + k])
+                .sum();
+            let v = g[j * b + i] - s;
+            if i < j {
+                r[j * b + i] = v / r[i * b + i];
+            } else {
+                let (left, whole) = (Scalar::re(v), Scalar::re(g[j * b + j]));
+                if !(left > 1e-6 * whole && whole > 1e-280) {
+                    return None;
+                }
+                r[j * b + j] = Scalar::from_re(left.sqrt());
+            }
+        }
+    }
+    Some(r)
+}
+
+/// R⁻¹ of an upper triangle, by columns.
+fn upper_inverse<T: Number>(r: &[T], b: usize) -> Vec<T> {
+    let mut x = vec![T::default(); b * b];
+    for j in 0..b {
+        for i in (0..=j).rev() {
+            let one = if i == j { 1.0 } else { 0.0 };
+            let s: T = (i + 1..=j).map(|k| r[k * b + i] * x[j * b + k]).sum();
+            x[j * b + i] = (<T as Scalar>::from_re(one) - s) / r[i * b + i];
+        }
+    }
+    x
 }
