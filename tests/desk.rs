@@ -12,7 +12,7 @@ use dotwright::spectrum::{Level, Spectrum, Wanted, solve};
 use ratatui::Terminal;
 use ratatui::backend::TestBackend;
 use std::cell::RefCell;
-use std::sync::OnceLock;
+use std::sync::Mutex;
 use std::time::Duration;
 
 fn rectangle(width: f64, height: f64) -> Outline {
@@ -141,28 +141,37 @@ impl Desk {
     }
 }
 
-/// What comes of a job. The slab that most tests lie open on is solved once.
+/// What comes of a job; each outline is solved once for all tests.
 fn done(job: Job) -> Vec<Action> {
-    static SLAB: OnceLock<Spectrum> = OnceLock::new();
+    static SOLVED: Mutex<Vec<(Outline, Spectrum)>> = Mutex::new(Vec::new());
+    let known = || SOLVED.lock().expect("no test fails while it looks here");
+    let said = RefCell::new(Vec::new());
     if let Job::Solve {
         generation,
         document: d,
         ..
     } = &job
-        && d.outline == rectangle(80., 50.)
-        && d.wanted.count == 12
     {
-        let watch = Watch::quiet();
-        let slab = SLAB.get_or_init(|| {
-            solve(&d.outline, d.kinetic, &d.wanted, None, &watch).expect("a rectangle has levels")
+        let hit = known()
+            .iter()
+            .find(|s| s.0 == d.outline)
+            .map(|s| s.1.clone());
+        if let Some(spectrum) = hit {
+            return vec![Action::Solved {
+                generation: *generation,
+                result: Ok(Box::new(spectrum)),
+            }];
+        }
+        let outline = d.outline.clone();
+        perform(job, &Watch::quiet(), &|a| {
+            if let Action::Solved { result: Ok(s), .. } = &a {
+                known().push((outline.clone(), (**s).clone()));
+            }
+            said.borrow_mut().push(a);
         });
-        return vec![Action::Solved {
-            generation: *generation,
-            result: Ok(Box::new(slab.clone())),
-        }];
+    } else {
+        perform(job, &Watch::quiet(), &|a| said.borrow_mut().push(a));
     }
-    let said = RefCell::new(Vec::new());
-    perform(job, &Watch::quiet(), &|a| said.borrow_mut().push(a));
     said.into_inner()
 }
 

@@ -5,8 +5,13 @@ use super::capability::{Background, Colours};
 use crate::pictures::Theme;
 use ratatui::style::{Color, Modifier, Style};
 
-/// Steps of a shade; few, so that neighbouring cells share a style and lines stay short.
-pub const SHADES: usize = 16;
+/// Steps of a shade on small plates: few, so that neighbouring cells share a style and a step to
+/// the next mode stays short on a slow line. One cell there spans more than a step anyway.
+const COARSE: usize = 10;
+/// Steps on large plates, where fewer would be seen as terraces.
+const FINE: usize = 20;
+/// Plates of more cells than this are large.
+const LARGE: usize = 1500;
 
 /// The painter's box for one terminal.
 #[derive(Clone, Debug)]
@@ -20,14 +25,15 @@ pub struct Paint {
 type Rgb = [u8; 3];
 
 impl Paint {
-    /// Mixes the shades once.
-    pub fn new(colours: Colours, background: Background) -> Self {
+    /// Mixes the shades for a plate of so many cells.
+    pub fn new(colours: Colours, background: Background, cells: usize) -> Self {
+        let steps = if cells > LARGE { FINE } else { COARSE };
         let light = background == Background::Light;
         let down = |c: Rgb| match colours {
             Colours::True => Color::Rgb(c[0], c[1], c[2]),
             _ => Color::Indexed(nearest(c)),
         };
-        let n = SHADES as i32;
+        let n = steps as i32;
         let part = |i: i32| f64::from(i) / f64::from(n);
         let theme = if light { Theme::Light } else { Theme::Dark };
         let palette = theme.palette();
@@ -51,15 +57,17 @@ impl Paint {
         self.colours >= Colours::Sixteen
     }
 
-    /// The colour of a density step in `0..=SHADES`.
-    pub fn density(&self, step: usize) -> Color {
-        self.density[step.min(SHADES)]
+    /// The colour of a density in 0..=1.
+    pub fn density(&self, tone: f64) -> Color {
+        let last = self.density.len() - 1;
+        self.density[((tone * last as f64).round().max(0.0) as usize).min(last)]
     }
 
-    /// The colour of a wave step in `-SHADES..=SHADES`.
-    pub fn wave(&self, step: i32) -> Color {
-        let n = SHADES as i32;
-        self.wave[(step.clamp(-n, n) + n) as usize]
+    /// The colour of a wave in -1..=1.
+    pub fn wave(&self, tone: f64) -> Color {
+        let last = self.wave.len() - 1;
+        let step = (0.5 * (tone + 1.0) * last as f64).round().max(0.0);
+        self.wave[(step as usize).min(last)]
     }
 
     /// What is chosen.
@@ -114,8 +122,8 @@ impl Paint {
             (Colours::Sixteen, false) => {
                 Style::new().fg(if self.light { Color::Blue } else { Color::Cyan })
             }
-            (_, true) => Style::new().fg(self.wave(SHADES as i32 * 3 / 4)),
-            (_, false) => Style::new().fg(self.wave(-(SHADES as i32) * 3 / 4)),
+            (_, true) => Style::new().fg(self.wave(0.75)),
+            (_, false) => Style::new().fg(self.wave(-0.75)),
         }
     }
 
@@ -186,14 +194,20 @@ mod tests {
     fn shades_stay_apart_in_every_depth() {
         for colours in [Colours::Palette, Colours::True] {
             for background in [Background::Dark, Background::Light] {
-                let paint = Paint::new(colours, background);
+                let paint = Paint::new(colours, background, 0);
+                let step = 1.0 / COARSE as f64;
                 // the palette has few dark greens and blues; every other step must still differ
-                for i in 0..SHADES - 1 {
-                    assert_ne!(paint.density(i), paint.density(i + 2), "{colours:?} {i}");
+                for i in 0..COARSE - 1 {
+                    let t = i as f64 * step;
+                    assert_ne!(
+                        paint.density(t),
+                        paint.density(t + 2.0 * step),
+                        "{colours:?} {i}"
+                    );
                 }
-                let n = SHADES as i32;
-                for i in 4..=n {
-                    assert_ne!(paint.wave(i), paint.wave(-i), "signs differ");
+                for i in 4..=COARSE {
+                    let t = i as f64 * step;
+                    assert_ne!(paint.wave(t), paint.wave(-t), "signs differ");
                 }
             }
         }
