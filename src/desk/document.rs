@@ -35,6 +35,8 @@ impl Scale {
 pub struct Document {
     /// Title, for people.
     pub title: String,
+    /// What is modelled, in a few words, for captions.
+    pub model: String,
     /// What exported files are named after.
     pub stem: String,
     /// The outline, in nm or in pure numbers.

@@ -1,6 +1,9 @@
 //! Pictures written from the desk: a name that is free, and the writing.
 
 use super::document::Document;
+use super::state::Show;
+use crate::pictures::{self, Nodes};
+use crate::spectrum::Spectrum;
 use std::path::{Path, PathBuf};
 
 /// The name a map is written under: shape, level, and a number when that exists already.
@@ -33,25 +36,37 @@ pub fn free_name(folder: &Path, stem: &str, level: usize, what: &str) -> PathBuf
         .unwrap_or(first)
 }
 
-/// Writes the map of one mode and gives its name.
+/// Writes the map of one mode, as for a report, and gives its name.
 pub fn write_map(
     document: &Document,
-    spectrum: &crate::spectrum::Spectrum,
+    spectrum: &Spectrum,
     mode: usize,
-    show: super::state::Show,
-    _background: super::capability::Background,
+    (show, nodes): (Show, bool),
     folder: &Path,
 ) -> Result<PathBuf, String> {
     let level = spectrum.levels.get(mode).ok_or("there is no such level")?;
-    let what = match show {
-        super::state::Show::Density => "density",
-        super::state::Show::Wave => "wave",
+    let show = match show {
+        Show::Density => pictures::Show::Density,
+        Show::Wave => pictures::Show::Wave,
     };
-    let path = free_name(folder, &document.stem, level.index, what);
-    Err(format!(
-        "{}: pictures are not in this build",
-        path.display()
-    ))
+    let look = pictures::Look {
+        show,
+        nodes: if nodes { Nodes::Drawn } else { Nodes::Left },
+        ..pictures::Look::default()
+    };
+    let units = pictures::Units {
+        energy: document.scale.energy().trim().into(),
+        length: document.scale.length().trim().into(),
+    };
+    let caption = pictures::Caption {
+        title: document.title.clone(),
+        units,
+        model: document.model.clone(),
+    };
+    let picture = pictures::map(&spectrum.modes, mode, level, &caption, &look);
+    let path = free_name(folder, &document.stem, level.index, show.name());
+    let written = picture.and_then(|p| p.save(&path));
+    written.map(|()| path).map_err(|e| e.to_string())
 }
 
 #[cfg(test)]

@@ -92,7 +92,7 @@ fn gauge(state: &State, word: &str, running: &Running) -> Line<'static> {
         return Line::from(spans);
     }
     let part = (step.done as f64 / step.of as f64).clamp(0.0, 1.0);
-    spans.push(Span::styled(format!(" {}  ", step.what), paint.quiet()));
+    spans.push(Span::styled(format!(", {}  ", step.what), paint.quiet()));
     const CELLS: usize = 12;
     let full = (part * CELLS as f64).round() as usize;
     let (on, off) = if state.ascii() {

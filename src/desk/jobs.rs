@@ -107,8 +107,8 @@ pub enum Job {
         mode: usize,
         /// What of it.
         show: Show,
-        /// For which background.
-        background: super::capability::Background,
+        /// Whether with nodal lines.
+        nodes: bool,
         /// Into which folder.
         folder: PathBuf,
     },

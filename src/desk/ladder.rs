@@ -6,14 +6,12 @@ use super::plate::{bit, braille};
 use super::round::ticks;
 use super::state::{State, groups};
 use crate::spectrum::Level;
+use crate::units::constants::MEV_PER_KELVIN;
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::style::Style;
 use ratatui::text::{Line, Span};
 use ratatui::widgets::Widget;
-
-/// Boltzmann's constant in meV/K (CODATA 2022, exact).
-const K_B: f64 = 0.086_173_332_621_451_79;
 
 /// The energy axis on rows of four dots.
 #[derive(Clone, Copy, Debug)]
@@ -178,7 +176,7 @@ fn thermal(
     if state.document.scale == Scale::Reduced {
         return;
     }
-    let kt = K_B * state.temperature;
+    let kt = MEV_PER_KELVIN * state.temperature;
     let (from, to) = (bars.axis.dot(energy), bars.axis.dot(energy + kt));
     for j in to..from {
         canvas.dot(2 * bars.width + 1, j, Ink::Thermal);

@@ -1,7 +1,8 @@
-//! Colours: one accent, one tone for what stands back, and the shades of the maps, brought down
-//! to what the terminal has.
+//! Colours: one accent, one tone for what stands back, and the shades of the maps, the same as
+//! in exported pictures, brought down to what the terminal has.
 
 use super::capability::{Background, Colours};
+use crate::pictures::Theme;
 use ratatui::style::{Color, Modifier, Style};
 
 /// Steps of a shade; few, so that neighbouring cells share a style and lines stay short.
@@ -16,25 +17,26 @@ pub struct Paint {
     light: bool,
 }
 
-type Rgb = (u8, u8, u8);
+type Rgb = [u8; 3];
 
 impl Paint {
     /// Mixes the shades once.
     pub fn new(colours: Colours, background: Background) -> Self {
         let light = background == Background::Light;
         let down = |c: Rgb| match colours {
-            Colours::True => Color::Rgb(c.0, c.1, c.2),
+            Colours::True => Color::Rgb(c[0], c[1], c[2]),
             _ => Color::Indexed(nearest(c)),
         };
         let n = SHADES as i32;
+        let part = |i: i32| f64::from(i) / f64::from(n);
+        let theme = if light { Theme::Light } else { Theme::Dark };
+        let palette = theme.palette();
         Self {
             colours,
             light,
-            density: (0..=n)
-                .map(|i| down(density(i as f64 / n as f64, light)))
-                .collect(),
+            density: (0..=n).map(|i| down(palette.density.at(part(i)))).collect(),
             wave: (-n..=n)
-                .map(|i| down(wave(i as f64 / n as f64, light)))
+                .map(|i| down(palette.wave.at(0.5 + 0.5 * part(i))))
                 .collect(),
         }
     }
@@ -70,7 +72,7 @@ impl Paint {
             } else {
                 Color::Yellow
             }),
-            _ => s.fg(self.mix((246, 189, 96), (176, 84, 0))),
+            _ => s.fg(self.mix([246, 189, 96], [176, 84, 0])),
         }
     }
 
@@ -78,7 +80,7 @@ impl Paint {
     pub fn quiet(&self) -> Style {
         match self.colours {
             Colours::None | Colours::Sixteen => Style::new().add_modifier(Modifier::DIM),
-            _ => Style::new().fg(self.mix((128, 134, 148), (110, 114, 126))),
+            _ => Style::new().fg(self.mix([128, 134, 148], [110, 114, 126])),
         }
     }
 
@@ -86,7 +88,7 @@ impl Paint {
     pub fn outline(&self) -> Style {
         match self.colours {
             Colours::None | Colours::Sixteen => Style::new(),
-            _ => Style::new().fg(self.mix((206, 212, 224), (40, 44, 56))),
+            _ => Style::new().fg(self.mix([206, 212, 224], [40, 44, 56])),
         }
     }
 
@@ -95,7 +97,7 @@ impl Paint {
         match self.colours {
             Colours::None => Style::new().add_modifier(Modifier::DIM),
             Colours::Sixteen => Style::new().fg(Color::Green),
-            _ => Style::new().fg(self.mix((150, 200, 170), (20, 110, 70))),
+            _ => Style::new().fg(self.mix([150, 200, 170], [20, 110, 70])),
         }
     }
 
@@ -123,82 +125,17 @@ impl Paint {
         match self.colours {
             Colours::None => s,
             Colours::Sixteen => s.fg(Color::Red),
-            _ => s.fg(self.mix((255, 125, 110), (190, 30, 30))),
+            _ => s.fg(self.mix([255, 125, 110], [190, 30, 30])),
         }
     }
 
     fn mix(&self, dark: Rgb, light: Rgb) -> Color {
         let c = if self.light { light } else { dark };
         match self.colours {
-            Colours::True => Color::Rgb(c.0, c.1, c.2),
+            Colours::True => Color::Rgb(c[0], c[1], c[2]),
             _ => Color::Indexed(nearest(c)),
         }
     }
-}
-
-/// Density scale: lightness runs evenly, hue from deep blue over green to pale yellow; turned
-/// round in lightness on a light background.
-fn density(t: f64, light: bool) -> Rgb {
-    let l = if light {
-        0.97 - 0.67 * t
-    } else {
-        0.20 + 0.76 * t
-    };
-    let turn = if light { 1.0 - t } else { t };
-    let hue = 268.0 - 170.0 * turn;
-    let chroma = 0.035
-        + 0.10 * (std::f64::consts::PI * t.powf(0.8)).sin().max(0.0)
-        + if light { 0.05 * t } else { 0.03 * t };
-    oklch(l, chroma, hue)
-}
-
-/// Wave scale: nothing at zero, blue below and amber above, of equal lightness.
-fn wave(t: f64, light: bool) -> Rgb {
-    let a = t.abs();
-    let l = if light {
-        0.97 - 0.47 * a
-    } else {
-        0.20 + 0.60 * a
-    };
-    let hue = if t < 0.0 { 248.0 } else { 62.0 };
-    oklch(l, 0.012 + 0.135 * a, hue)
-}
-
-/// sRGB of a colour in Oklab (B. Ottosson, 2020) given by lightness, chroma and hue in degrees;
-/// chroma is lowered until the colour exists.
-fn oklch(l: f64, chroma: f64, hue: f64) -> Rgb {
-    let (s, c) = hue.to_radians().sin_cos();
-    let mut k = chroma;
-    loop {
-        let linear = linear_rgb(l, k * c, k * s);
-        let fits = linear.iter().all(|v| (-1e-4..=1.0001).contains(v));
-        if fits || k < 1e-3 {
-            let [r, g, b] = linear.map(gamma);
-            return (r, g, b);
-        }
-        k *= 0.97;
-    }
-}
-
-fn linear_rgb(l: f64, a: f64, b: f64) -> [f64; 3] {
-    let p = (l + 0.396_337_777_4 * a + 0.215_803_757_3 * b).powi(3);
-    let q = (l - 0.105_561_345_8 * a - 0.063_854_172_8 * b).powi(3);
-    let r = (l - 0.089_484_177_5 * a - 1.291_485_548_0 * b).powi(3);
-    [
-        4.076_741_662_1 * p - 3.307_711_591_3 * q + 0.230_969_929_2 * r,
-        -1.268_438_004_6 * p + 2.609_757_401_1 * q - 0.341_319_396_5 * r,
-        -0.004_196_086_3 * p - 0.703_418_614_7 * q + 1.707_614_701_0 * r,
-    ]
-}
-
-fn gamma(x: f64) -> u8 {
-    let x = x.clamp(0.0, 1.0);
-    let y = if x <= 0.003_130_8 {
-        12.92 * x
-    } else {
-        1.055 * x.powf(1.0 / 2.4) - 0.055
-    };
-    (y * 255.0).round() as u8
 }
 
 /// The entry of the fixed 256 palette (colour cube and grey ramp) closest to a colour.
@@ -207,15 +144,15 @@ fn nearest(c: Rgb) -> u8 {
     let far = |p: Rgb| {
         let d = |a: u8, b: u8| (f64::from(a) - f64::from(b)).powi(2);
         // weights near those of the eye's three receptors keep hues from tipping over
-        3.0 * d(p.0, c.0) + 5.0 * d(p.1, c.1) + 2.0 * d(p.2, c.2)
+        3.0 * d(p[0], c[0]) + 5.0 * d(p[1], c[1]) + 2.0 * d(p[2], c[2])
     };
     let cube = (0..216u8).map(|i| {
         let at = |k: u8| CUBE[usize::from(k % 6)];
-        (16 + i, (at(i / 36), at(i / 6), at(i)))
+        (16 + i, [at(i / 36), at(i / 6), at(i)])
     });
     let grey = (0..24u8).map(|i| {
         let v = 8 + 10 * i;
-        (232 + i, (v, v, v))
+        (232 + i, [v, v, v])
     });
     cube.chain(grey)
         .min_by(|a, b| far(a.1).total_cmp(&far(b.1)))
@@ -226,26 +163,27 @@ fn nearest(c: Rgb) -> u8 {
 mod tests {
     use super::*;
 
-    fn luma(c: Rgb) -> f64 {
-        0.3 * f64::from(c.0) + 0.59 * f64::from(c.1) + 0.11 * f64::from(c.2)
-    }
-
     #[test]
-    fn shades_rise_and_meet() {
-        for i in 0..SHADES {
-            let (t, u) = (i as f64 / SHADES as f64, (i + 1) as f64 / SHADES as f64);
-            assert!(luma(density(t, false)) < luma(density(u, false)));
-            assert!(luma(density(t, true)) > luma(density(u, true)));
-            assert!(luma(wave(-t, false)) < luma(wave(-u, false)));
+    fn shades_stay_apart_in_every_depth() {
+        for colours in [Colours::Palette, Colours::True] {
+            for background in [Background::Dark, Background::Light] {
+                let paint = Paint::new(colours, background);
+                // the palette has few dark greens and blues; every other step must still differ
+                for i in 0..SHADES - 1 {
+                    assert_ne!(paint.density(i), paint.density(i + 2), "{colours:?} {i}");
+                }
+                let n = SHADES as i32;
+                for i in 4..=n {
+                    assert_ne!(paint.wave(i), paint.wave(-i), "signs differ");
+                }
+            }
         }
-        let (a, b) = (luma(wave(-1.0, false)), luma(wave(1.0, false)));
-        assert!((a - b).abs() < 25.0, "signs weigh the same: {a} {b}");
     }
 
     #[test]
     fn palette_entries() {
-        assert_eq!(nearest((0, 0, 0)), 16);
-        assert_eq!(nearest((255, 255, 255)), 231);
-        assert_eq!(nearest((128, 128, 128)), 244);
+        assert_eq!(nearest([0, 0, 0]), 16);
+        assert_eq!(nearest([255, 255, 255]), 231);
+        assert_eq!(nearest([128, 128, 128]), 244);
     }
 }

@@ -4,20 +4,17 @@ use super::capability::{Capability, Glyphs};
 use super::document::Document;
 use super::guard::{self, Guard};
 use super::jobs::{Action, Job};
-use super::keys::Key;
+use super::listen::{listen_to_keys, listen_to_signals, resize};
 use super::screen::Screen;
 use super::state::State;
 use super::update::update;
 use super::view::view;
 use super::workers::Workers;
 use crate::progress::Watch;
-use ratatui::crossterm::event::{self, Event, KeyCode, KeyEvent, KeyEventKind, KeyModifiers};
-use ratatui::crossterm::terminal::window_size;
-use signal_hook::consts::{SIGCONT, SIGHUP, SIGINT, SIGTERM, SIGTSTP};
-use signal_hook::iterator::Signals;
+use signal_hook::consts::SIGTSTP;
 use std::io::IsTerminal;
 use std::path::PathBuf;
-use std::sync::mpsc::{RecvTimeoutError, Sender, channel};
+use std::sync::mpsc::{RecvTimeoutError, channel};
 use std::thread;
 use std::time::{Duration, Instant};
 
@@ -25,6 +22,9 @@ use std::time::{Duration, Instant};
 const BEAT: Duration = Duration::from_millis(100);
 /// Between two looks at the clock while nothing runs.
 const REST: Duration = Duration::from_secs(3600);
+
+/// Names a [`Rehearsal`] to a desk that is started as a program of its own.
+const REHEARSE: &str = "DOTWRIGHT_REHEARSE";
 
 /// What the person chose on the command line.
 #[derive(Clone, Debug, Default)]
@@ -114,7 +114,12 @@ pub fn run(document: Document, settings: Settings) -> Result<(), DeskError> {
         state.temperature = t;
     }
     let guard = Guard::enter()?;
-    let done = stay(&mut state, settings.rehearsal);
+    let staged = || {
+        std::env::var(REHEARSE)
+            .ok()
+            .and_then(|w| Rehearsal::named(&w))
+    };
+    let done = stay(&mut state, settings.rehearsal.or_else(staged));
     drop(guard);
     Ok(done?)
 }
@@ -172,82 +177,8 @@ fn stay(state: &mut State, rehearsal: Option<Rehearsal>) -> std::io::Result<()> 
     Ok(())
 }
 
-fn resize((columns, rows): (u16, u16)) -> Action {
-    let aspect = window_size()
-        .ok()
-        .filter(|w| w.width > 0 && w.height > 0 && w.columns > 0 && w.rows > 0)
-        .map_or(2.0, |w| {
-            let across = f64::from(w.width) / f64::from(w.columns);
-            f64::from(w.height) / f64::from(w.rows) / across
-        });
-    Action::Resize {
-        columns,
-        rows,
-        aspect,
-    }
-}
-
 fn sleep_until_woken() -> std::io::Result<()> {
     guard::restore();
     signal_hook::low_level::emulate_default_handler(SIGTSTP)?;
     guard::take()
-}
-
-fn listen_to_keys(out: Sender<Action>) -> std::io::Result<()> {
-    thread::Builder::new()
-        .name("desk keys".into())
-        .spawn(move || {
-            loop {
-                let action = match event::read() {
-                    Ok(Event::Key(k)) if k.kind != KeyEventKind::Release => key(k).map(Action::Key),
-                    Ok(Event::Resize(columns, rows)) => Some(resize((columns, rows))),
-                    Ok(_) => None,
-                    Err(_) => Some(Action::Leave),
-                };
-                let last = matches!(action, Some(Action::Leave));
-                if action.is_some_and(|a| out.send(a).is_err()) || last {
-                    return;
-                }
-            }
-        })?;
-    Ok(())
-}
-
-fn key(event: KeyEvent) -> Option<Key> {
-    let control = event.modifiers.contains(KeyModifiers::CONTROL);
-    Some(match event.code {
-        KeyCode::Char(c) if control => Key::Ctrl(c.to_ascii_lowercase()),
-        KeyCode::Char(c) => Key::Char(c),
-        KeyCode::Left => Key::Left,
-        KeyCode::Right => Key::Right,
-        KeyCode::Up => Key::Up,
-        KeyCode::Down => Key::Down,
-        KeyCode::PageUp => Key::PageUp,
-        KeyCode::PageDown => Key::PageDown,
-        KeyCode::Home => Key::Home,
-        KeyCode::End => Key::End,
-        KeyCode::Enter => Key::Enter,
-        KeyCode::Esc => Key::Esc,
-        KeyCode::Backspace => Key::Backspace,
-        _ => return None,
-    })
-}
-
-fn listen_to_signals(out: Sender<Action>) -> std::io::Result<signal_hook::iterator::Handle> {
-    let mut signals = Signals::new([SIGTERM, SIGINT, SIGHUP, SIGCONT])?;
-    let handle = signals.handle();
-    thread::Builder::new()
-        .name("desk signals".into())
-        .spawn(move || {
-            for signal in signals.forever() {
-                let action = match signal {
-                    SIGCONT => Action::Key(Key::Ctrl('l')),
-                    _ => Action::Leave,
-                };
-                if out.send(action).is_err() {
-                    return;
-                }
-            }
-        })?;
-    Ok(handle)
 }

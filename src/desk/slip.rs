@@ -2,10 +2,11 @@
 
 use super::document::Scale;
 use super::head::shorten;
-use super::notation::{concise, significant};
+use super::notation::significant;
 use super::portrait::Portrait;
 use super::state::State;
 use crate::spectrum::{Level, Spectrum};
+use crate::units::{EnergyUnit, concise, duration};
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
 use ratatui::style::{Modifier, Style};
@@ -13,10 +14,6 @@ use ratatui::text::{Line, Span};
 use ratatui::widgets::Widget;
 use unicode_width::UnicodeWidthStr;
 
-/// GHz in one meV: 1/h (CODATA 2022, exact).
-const GHZ: f64 = 241.798_924_208_491_8;
-/// Kelvin in one meV: 1/k_B (CODATA 2022, exact).
-const KELVIN: f64 = 11.604_518_121_550_083;
 /// Figures further from their words than this are hard to follow.
 const WIDEST: usize = 34;
 
@@ -127,9 +124,14 @@ impl Slip<'_> {
         let first = self.width - 2 * each;
         let heads = format!("{:<first$}{:>each$}{:>each$}", "spacing", "above", "below");
         self.line(1, vec![Span::styled(heads, quiet)]);
-        let units: &[(&str, f64)] = match self.state.document.scale {
-            Scale::Lab => &[("meV", 1.0), ("GHz", GHZ), ("K", KELVIN)],
-            Scale::Reduced => &[("E", 1.0)],
+        let lab = [
+            EnergyUnit::Millielectronvolt,
+            EnergyUnit::Gigahertz,
+            EnergyUnit::Kelvin,
+        ];
+        let units = match self.state.document.scale {
+            Scale::Lab => lab.map(|u| (u.symbol(), u.per_mev())).to_vec(),
+            Scale::Reduced => vec![("E", 1.0)],
         };
         for (turn, (unit, factor)) in (1..).zip(units) {
             let write = |x: Option<f64>| x.map_or("-".into(), |x| significant(x * factor, 4));
@@ -153,7 +155,7 @@ impl Slip<'_> {
         let write = |f: &dyn Fn(&Portrait) -> String| portrait.map_or(String::new(), f);
         // what is below a ten-thousandth of the shape is sampling, not place
         let steady = |x: f64| if x.abs() < 1e-4 * size { 0.0 } else { x };
-        let decimals = (3.0 - size.log10().floor()).clamp(0.0, 8.0) as usize;
+        let decimals = (2.0 - size.log10().floor()).clamp(0.0, 8.0) as usize;
         let centre = write(&|p| {
             let (x, y) = (steady(p.centroid.x), steady(p.centroid.y));
             format!("{x:.decimals$}, {y:.decimals$}{unit}")
@@ -211,7 +213,7 @@ impl Slip<'_> {
         let t = &spectrum.timings;
         let all = t.lattice + t.operators + t.factor + t.solve;
         if all > 0.0 {
-            self.paragraph(9, &format!("solved in {} ms", significant(all, 3)), quiet);
+            self.paragraph(9, &format!("solved in {}", duration(1e-3 * all)), quiet);
         }
     }
 }

@@ -371,7 +371,7 @@ fn export(state: &mut State) -> Vec<Job> {
         spectrum,
         mode: state.chosen,
         show: state.show,
-        background: state.background,
+        nodes: state.nodes,
         folder: state.folder.clone(),
     }]
 }

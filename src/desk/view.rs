@@ -52,28 +52,31 @@ fn plate(state: &State, buffer: &mut Buffer, layout: &Layout) {
     };
     let look = state.look();
     let sight = &mount.sight;
-    let Some(picture) = state.picture() else {
-        outline_only(buffer, layout.plate, sight, &mount.outline, &look);
-        return;
-    };
-    let nodes = state.nodes.then_some(&picture.nodes);
-    let lines = (&mount.outline, nodes);
-    develop(
-        buffer,
-        layout.plate,
-        sight,
-        &picture.exposure,
-        &mount.within,
-        lines,
-        &look,
-    );
+    let area = layout.plate;
+    if let Some(p) = state.picture() {
+        let nodes = state.nodes.then_some(&p.nodes);
+        let lines = (&mount.outline, nodes);
+        develop(
+            buffer,
+            area,
+            sight,
+            &p.exposure,
+            &mount.within,
+            lines,
+            &look,
+        );
+    } else {
+        outline_only(buffer, area, sight, &mount.outline, &look);
+    }
     let room = usize::from(layout.caption.width);
-    let ramp = legend((room / 3).clamp(6, 24), &look);
-    let ramp = Line::from(ramp);
-    let left = room.saturating_sub(ramp.width() + 2);
-    let bar = scale_bar(sight, state.document.scale.length(), left, &look);
-    Line::from(bar).render(layout.caption, buffer);
-    ramp.right_aligned().render(layout.caption, buffer);
+    let bar = Line::from(scale_bar(sight, state.document.scale.length(), room, &look));
+    let ramp = Line::from(legend((room / 3).clamp(6, 24), &look));
+    // where both do not fit, lengths matter more than shades
+    let fits = bar.width() + 2 + ramp.width() <= room;
+    bar.render(layout.caption, buffer);
+    if fits && state.count() > 0 {
+        ramp.right_aligned().render(layout.caption, buffer);
+    }
 }
 
 fn too_small(state: &State, buffer: &mut Buffer, area: Rect) {

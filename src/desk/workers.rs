@@ -158,10 +158,10 @@ pub fn perform(job: Job, watch: &Watch, say: &dyn Fn(Action)) {
             spectrum,
             mode,
             show,
-            background,
+            nodes,
             folder,
         } => {
-            let written = write_map(&document, &spectrum, mode, show, background, &folder);
+            let written = write_map(&document, &spectrum, mode, (show, nodes), &folder);
             say(Action::Exported(written));
         }
         Job::Redraw | Job::Suspend => {}

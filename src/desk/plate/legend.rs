@@ -13,7 +13,7 @@ use ratatui::text::Span;
 
 /// A bar of a round length, with that length beside it; at most `room` cells in all.
 pub fn scale_bar(sight: &Sight, unit: &str, room: usize, look: &Look) -> Vec<Span<'static>> {
-    let target = (room / 2).min(sight.columns / 3).max(2);
+    let target = (room / 3).min(sight.columns / 3).max(2);
     let length = round_below(target as f64 * sight.cell());
     let cells = ((length / sight.cell()).round() as usize).max(1);
     let bar = match (look.glyphs, cells) {

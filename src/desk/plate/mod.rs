@@ -15,25 +15,25 @@ pub use legend::{legend, scale_bar};
 pub use sight::Sight;
 pub use strokes::{Strokes, bit, braille};
 
-use crate::geometry::{Outline, Point};
+use crate::geometry::{Loop, Outline, Piece, Point};
 
-/// An outline as closed polylines, fine enough for any screen (a chord strays by less than a
-/// thousandth of the box).
+/// An outline as closed polylines, fine enough for any screen: a curve as large as the whole
+/// outline strays from its chords by less than a thousandth of it, smaller ones by less.
 pub fn flatten(outline: &Outline) -> Vec<Vec<Point>> {
-    outline
-        .loops
-        .iter()
-        .map(|l| {
-            let mut line = Vec::new();
-            for piece in &l.pieces {
-                let steps = match piece {
-                    crate::geometry::Piece::Line { .. } => 1,
-                    _ => 96,
-                };
-                line.extend((0..steps).map(|k| piece.at(k as f64 / steps as f64)));
-            }
-            line
-        })
-        .filter(|l: &Vec<Point>| l.len() > 1)
-        .collect()
+    let whole = outline.bounds().diagonal();
+    let line = |l: &Loop| -> Vec<Point> {
+        let mut out = Vec::new();
+        for piece in &l.pieces {
+            let part = piece.bounds().diagonal() / whole;
+            let steps = match piece {
+                Piece::Line { .. } => 1,
+                // the chord's error goes with the square of its length
+                _ => (96.0 * part.min(1.0).sqrt()).ceil().max(3.0) as usize,
+            };
+            out.extend((0..steps).map(|k| piece.at(k as f64 / steps as f64)));
+        }
+        out
+    };
+    let lines = outline.loops.iter().map(line);
+    lines.filter(|l| l.len() > 2).collect()
 }

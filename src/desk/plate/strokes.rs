@@ -21,6 +21,9 @@ pub fn bit(i: usize, j: usize) -> u8 {
 
 /// The braille character with these dots.
 pub fn braille(dots: u8) -> char {
+    if dots == 0 {
+        return ' ';
+    }
     // the block U+2800..=U+28FF holds all 256
     char::from_u32(0x2800 + u32::from(dots)).unwrap_or(' ')
 }
