@@ -19,6 +19,19 @@ pub(super) struct Edge {
 }
 
 impl Edge {
+    /// Direction and curvature of the edge as seen when it is left from one end: the start if
+    /// `forward`, else the end.
+    pub fn leaving(&self, forward: bool) -> (f64, f64) {
+        if forward {
+            (self.piece.tangent(0.0).angle(), self.piece.curvature(0.0))
+        } else {
+            (
+                (-self.piece.tangent(1.0)).angle(),
+                -self.piece.curvature(1.0),
+            )
+        }
+    }
+
     /// A point on it.
     pub fn middle(&self) -> Point {
         self.piece.at(0.5)

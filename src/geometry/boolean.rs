@@ -258,6 +258,26 @@ mod tests {
     }
 
     #[test]
+    fn a_hole_that_touches_the_edge_has_the_angles_of_its_wedges() {
+        for s in placements() {
+            let q = rectangle(0., 0., 4., 4.).transformed(&s);
+            let diamond = [pt(2., 0.), pt(3., 1.), pt(2., 2.), pt(1., 1.)];
+            let o = q
+                .cut(&Outline::polygon(&diamond).unwrap().transformed(&s))
+                .unwrap();
+            assert_eq!(o.loops.len(), 1);
+            let c = o.corners(1e-7);
+            assert_eq!(c.len(), 9);
+            assert_eq!(
+                c.iter()
+                    .filter(|c| (c.angle - PI / 4.0).abs() < 1e-12)
+                    .count(),
+                2
+            );
+        }
+    }
+
+    #[test]
     fn remarks_tell_what_a_step_did_not_do() {
         let a = rectangle(0., 0., 2., 2.);
         let remark = |op, b: &Outline| a.combined(op, b).unwrap().1;

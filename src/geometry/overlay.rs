@@ -4,12 +4,13 @@
 //! then go to `i_overlay` cross nowhere but at common vertices, so it decides only *which* edges
 //! bound the result; where they run is never taken from its integer grid.
 
-use super::arrange::{Arrangement, Edge};
+use super::arrange::Arrangement;
 use super::error::GeometryError;
 use super::outline::Loop;
 use super::piece::Piece;
 use super::point::{Point, pt};
 use super::tidy::tidy;
+use super::wedges;
 use i_overlay::core::edge_data::{EdgeDataMerge, OverlayEdgeData};
 use i_overlay::core::edge_overlay::{EdgeOverlay, InputEdge};
 use i_overlay::core::overlay::ShapeType;
@@ -43,8 +44,8 @@ impl OverlayEdgeData for Tag {
     }
 }
 
-/// A directed edge of the result.
-type Step = (usize, bool);
+/// A directed edge of the result: its number, and whether it is run through forwards.
+pub(super) type Step = (usize, bool);
 
 /// Overlays closed loops of pieces and returns the loops of the result, material on the left.
 ///
@@ -66,9 +67,10 @@ pub(super) fn overlay(
         let chords = arrangement.chords(tolerance * arrangement.size, matched);
         match select(&arrangement, &chords, rule, fill) {
             Ok(contours) => {
-                let loops = contours.iter().flat_map(|c| simple(c, &arrangement));
+                let loops = wedges::loops(contours, &arrangement);
                 return Ok(loops
-                    .filter_map(|l| tidy(arrangement.pieces(&l), arrangement.size))
+                    .iter()
+                    .filter_map(|l| tidy(arrangement.pieces(l), arrangement.size))
                     .collect());
             }
             Err(at) => problem = Some(at),
@@ -150,27 +152,6 @@ fn select(
         out.push(contour_steps);
     }
     Ok(out)
-}
-
-/// Splits a contour at vertices it visits twice, so that every loop is simple.
-fn simple(contour: &[Step], arrangement: &Arrangement) -> Vec<Vec<Step>> {
-    let start = |s: &Step| {
-        let e: &Edge = &arrangement.edges[s.0];
-        if s.1 { e.from } else { e.to }
-    };
-    let mut out = Vec::new();
-    let mut stack: Vec<Step> = Vec::new();
-    for s in contour {
-        let v = start(s);
-        if let Some(k) = stack.iter().position(|q| start(q) == v) {
-            out.push(stack.split_off(k));
-        }
-        stack.push(*s);
-    }
-    if !stack.is_empty() {
-        out.push(stack);
-    }
-    out
 }
 
 /// The integer grid: 2⁵⁰ steps over the size, below the roundoff of the coordinates.
