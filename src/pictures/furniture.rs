@@ -1,12 +1,13 @@
 //! What stands under a map: the scale bar and the colour bar.
 
+use super::map::Style;
 use super::place::Area;
 use super::scale::Scale;
 use super::text::{Anchor, Type};
 use super::theme::Palette;
 use super::ticks::{decade, minus, round_below, superscript, ticks};
 use super::{Show, Units};
-use tiny_skia::{Color, FillRule, Paint, PathBuilder, Pixmap, Rect, Transform};
+use tiny_skia::{Color, FillRule, Paint, PathBuilder, Pixmap, Rect, Stroke, Transform};
 
 /// Sizes that belong to a page of 1200 pixels, in its pixels.
 pub const SMALL: f32 = 21.0;
@@ -97,14 +98,21 @@ fn join(number: &str, unit: &str) -> String {
 }
 
 /// A horizontal bar of the scale from lowest to highest value, with ticks below and a label above.
-/// `peak` is the largest |ψ|, in 1/length; `area` is the bar itself.
-pub fn colour_bar(page: &mut Page, area: Area, show: Show, peak: f64, units: &Units) {
+/// `area` is the bar itself; where values lie beyond the scale, its end is a point.
+pub fn colour_bar(page: &mut Page, area: Area, style: &Style, units: &Units) {
+    let (show, peak) = (style.show, style.peak);
     let (u, ink, muted) = (page.unit, page.palette.ink, page.palette.muted);
     let (scale, lo, hi) = match show {
         Show::Density => (page.palette.density.clone(), 0.0, peak * peak),
         Show::Wave => (page.palette.wave.clone(), -peak, peak),
     };
     strip(page, area, &scale);
+    if style.clipped {
+        point(page, area, area.left + area.width, scale.at(1.0));
+        if show == Show::Wave {
+            point(page, area, area.left, scale.at(0.0));
+        }
+    }
     let k = decade(hi);
     let factor = 10f64.powi(k);
     let (left, width) = (area.left as f32, area.width as f32);
@@ -150,6 +158,34 @@ fn quantity(show: Show, decade: i32, units: &Units) -> String {
     } else {
         minus(&format!("{symbol} in {}", what.join(" ")))
     }
+}
+
+/// A triangle at the end `x` of a bar, pointing away from its middle.
+fn point(page: &mut Page, area: Area, x: f64, colour: [u8; 3]) {
+    let out = if x > area.left { 0.8 } else { -0.8 } * area.height;
+    let (x, top) = (x.round() as f32, area.top.round() as f32);
+    let height = area.height.round() as f32;
+    let thin = (1.5 * page.unit).max(1.0);
+    // the base reaches into the bar and hides its frame
+    let base = x - out.signum() as f32 * 2.0 * thin;
+    let mut builder = PathBuilder::new();
+    builder.move_to(base, top);
+    builder.line_to(x, top);
+    builder.line_to(x + out as f32, top + height / 2.0);
+    builder.line_to(x, top + height);
+    builder.line_to(base, top + height);
+    let Some(path) = builder.finish() else {
+        return;
+    };
+    let whole = Transform::identity();
+    let stroke = Stroke {
+        width: 2.0 * thin,
+        ..Stroke::default()
+    };
+    let edge = paint(page.palette.muted);
+    page.canvas.stroke_path(&path, &edge, &stroke, whole, None);
+    page.canvas
+        .fill_path(&path, &paint(colour), FillRule::Winding, whole, None);
 }
 
 /// The colours themselves, column by column, in a thin frame.

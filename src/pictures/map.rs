@@ -69,6 +69,7 @@ pub fn map(
         nodes: look.nodes,
         peak: field.peak,
         line: 2.6,
+        clipped: false,
     };
     paint_mode(&mut page, modes, &view, &field, &style);
 
@@ -93,26 +94,33 @@ pub struct Style {
     pub peak: f64,
     /// Width of the outline, in 1/1200 of the page.
     pub line: f32,
+    /// Whether some values lie beyond the end of the scale.
+    pub clipped: bool,
 }
 
 /// The field in its outline, nodal lines, and the outline itself.
 pub fn paint_mode(page: &mut Page, modes: &Modes, view: &View, field: &Field, style: &Style) {
-    let (w, h) = (page.canvas.width(), page.canvas.height());
     let Some(path) = view.path(modes.outline()) else {
         return;
     };
-    let Some(cover) = coverage(&path, w, h) else {
+    let Some(cover) = coverage(&path, field.start, field.size) else {
         return;
     };
     paint_field(page, field, cover.data(), style);
     if style.nodes == Nodes::Drawn {
-        let inside = |x: usize, y: usize| cover.data()[y * w as usize + x] == 255;
-        let in_page = |x: usize, y: usize| x < w as usize && y < h as usize;
-        if let Some(lines) = nodal_lines(field, |x, y| in_page(x, y) && inside(x, y)) {
-            let stroke = pen((1.5 * page.unit).max(0.8), LineJoin::Round);
-            let colour = paint(page.palette.node);
+        let (x0, y0) = field.start;
+        let inside = |x: usize, y: usize| {
+            let (i, j) = (x - x0, y - y0);
+            i < field.size.0 && j < field.size.1 && cover.data()[j * field.size.0 + i] == 255
+        };
+        let stroke = pen((1.5 * page.unit).max(1.0), LineJoin::Round);
+        for (strength, lines) in nodal_lines(field, inside) {
+            let mut colour = page.palette.page;
+            for (under, over) in colour.iter_mut().zip(page.palette.node) {
+                *under = mix(*under, over, strength);
+            }
             page.canvas
-                .stroke_path(&lines, &colour, &stroke, Transform::identity(), None);
+                .stroke_path(&lines, &paint(colour), &stroke, Transform::identity(), None);
         }
     }
     let stroke = pen((style.line * page.unit).max(1.0), LineJoin::Miter);
@@ -138,12 +146,12 @@ fn paint_field(page: &mut Page, field: &Field, cover: &[u8], style: &Style) {
     };
     let inverse = if peak > 0.0 { 1.0 / peak } else { 0.0 };
     let mut row = Vec::new();
-    for j in 0..field.size.1 {
+    for (j, cover) in cover.chunks(field.size.0).enumerate() {
         field.row(j, &mut row);
         let first = (field.start.1 + j) * w + field.start.0;
-        for (i, &psi) in row.iter().enumerate() {
-            let k = first + i;
-            if cover[k] == 0 {
+        let pixels = &mut page.canvas.data_mut()[4 * first..4 * (first + field.size.0)];
+        for ((pixel, &cover), &psi) in pixels.chunks_exact_mut(4).zip(cover).zip(&row) {
+            if cover == 0 {
                 continue;
             }
             let psi = f64::from(psi);
@@ -151,8 +159,7 @@ fn paint_field(page: &mut Page, field: &Field, cover: &[u8], style: &Style) {
                 Show::Density => psi * psi * inverse,
                 Show::Wave => 0.5 + 0.5 * psi * inverse,
             };
-            let part = f32::from(cover[k]) / 255.0;
-            let pixel = &mut page.canvas.data_mut()[4 * k..4 * k + 3];
+            let part = f32::from(cover) / 255.0;
             for (under, over) in pixel.iter_mut().zip(scale.at(t)) {
                 *under = mix(*under, over, part);
             }
@@ -225,7 +232,7 @@ fn footer(page: &mut Page, foot: f32, view: &View, style: &Style, caption: &Capt
         width: f64::from(520.0 * u),
         height: f64::from(18.0 * u),
     };
-    colour_bar(page, bar, style.show, style.peak, &caption.units);
+    colour_bar(page, bar, style, &caption.units);
     scale_bar(
         page,
         left,

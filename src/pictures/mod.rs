@@ -175,3 +175,25 @@ fn standing_text(caption: &Caption) -> Vec<(&'static str, String)> {
     }
     all
 }
+
+#[cfg(test)]
+mod example {
+    //! The modes of a box, for the tests of this room.
+    use crate::geometry::{Outline, Point};
+    use crate::modes::Modes;
+    use crate::progress::Watch;
+    use crate::spectrum::{Wanted, solve};
+
+    /// The lowest four modes of a box 3 by 2 with a corner at (1, 1): by half waves along x and y
+    /// they are 11, 21, 12, 31.
+    pub fn box_modes() -> Modes {
+        let p = |x, y| Point { x, y };
+        let outline = Outline::polygon(&[p(1., 1.), p(4., 1.), p(4., 3.), p(1., 3.)]);
+        let wanted = Wanted {
+            count: 4,
+            ..Wanted::default()
+        };
+        let solved = solve(&outline, 1.0, &wanted, None, &Watch::quiet());
+        solved.expect("a box can be solved").modes
+    }
+}

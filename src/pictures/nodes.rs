@@ -5,12 +5,17 @@ use tiny_skia::{Path, PathBuilder};
 
 /// Side, in samples, of the blocks in which the amplitude is judged.
 const BLOCK: usize = 8;
-/// Below this part of the peak, in a block and its neighbours, a change of sign is left out: the
-/// page is blank there, and the sign is near the accuracy of the mode.
-const FAINT: f32 = 1e-3;
+/// A nodal line is drawn in full where the amplitude around it is above the first part of the
+/// peak, and not at all below the second: the page is blank there, and the sign is near the
+/// accuracy of the mode.
+const FULL: f32 = 1e-2;
+const BLANK: f32 = 5e-4;
+/// Shades in which lines fade.
+const SHADES: usize = 6;
 
-/// Nodal lines as a path on the page; `inside` tells whether a pixel lies wholly in the outline.
-pub fn nodal_lines(field: &Field, inside: impl Fn(usize, usize) -> bool) -> Option<Path> {
+/// Nodal lines as paths on the page, each with the strength, 0 to 1, it is to be drawn with;
+/// `inside` tells whether a pixel lies wholly in the outline.
+pub fn nodal_lines(field: &Field, inside: impl Fn(usize, usize) -> bool) -> Vec<(f32, Path)> {
     let (nx, ny) = field.count;
     let loud = Loudness::of(field);
     let place = |i: usize, j: usize| {
@@ -25,7 +30,7 @@ pub fn nodal_lines(field: &Field, inside: impl Fn(usize, usize) -> bool) -> Opti
             inside(x, y)
         })
         .collect();
-    let mut builder = PathBuilder::new();
+    let mut shades: Vec<PathBuilder> = vec![PathBuilder::new(); SHADES];
     for j in 0..ny.saturating_sub(1) {
         for i in 0..nx.saturating_sub(1) {
             let k = [
@@ -36,12 +41,14 @@ pub fn nodal_lines(field: &Field, inside: impl Fn(usize, usize) -> bool) -> Opti
             ];
             let v = k.map(|k| field.values[k]);
             let positive = v.map(|v| v >= 0.0);
-            if positive.iter().all(|&p| p == positive[0])
-                || !k.iter().all(|&k| within[k])
-                || !loud.at(i, j)
-            {
+            if positive.iter().all(|&p| p == positive[0]) || !k.iter().all(|&k| within[k]) {
                 continue;
             }
+            let strength = loud.at(i, j);
+            if strength <= 0.0 {
+                continue;
+            }
+            let builder = &mut shades[((strength * SHADES as f32) as usize).min(SHADES - 1)];
             let (x, y) = place(i, j);
             for (from, to) in crossings(v, positive) {
                 let pixel = |p: (f32, f32)| {
@@ -54,7 +61,12 @@ pub fn nodal_lines(field: &Field, inside: impl Fn(usize, usize) -> bool) -> Opti
             }
         }
     }
-    builder.finish()
+    let strength = |shade: usize| (shade + 1) as f32 / SHADES as f32;
+    shades
+        .into_iter()
+        .enumerate()
+        .filter_map(|(shade, builder)| Some((strength(shade), builder.finish()?)))
+        .collect()
 }
 
 type Place = (f32, f32);
@@ -86,10 +98,12 @@ fn crossings(v: [f32; 4], positive: [bool; 4]) -> Vec<(Place, Place)> {
     }
 }
 
-/// Whether the field is worth a line, by blocks.
+/// How much a line is worth, by blocks.
 struct Loudness {
-    blocks: Vec<bool>,
+    /// 0 blank to 1 full, for each block with its neighbours.
+    blocks: Vec<f32>,
     across: usize,
+    down: usize,
 }
 
 impl Loudness {
@@ -101,34 +115,50 @@ impl Loudness {
             let b = (k / nx / BLOCK) * across + k % nx / BLOCK;
             top[b] = top[b].max(v.abs());
         }
-        let floor = FAINT * field.peak as f32;
+        let (top, peak) = (&top, field.peak as f32);
+        let worth = |amplitude: f32| {
+            let decades = (amplitude / peak).max(1e-30).log10() - BLANK.log10();
+            (decades / (FULL / BLANK).log10()).clamp(0.0, 1.0)
+        };
         let blocks = (0..across * down)
             .map(|b| {
-                let (i, j) = (b % across, b / across);
                 let near = |c: usize, end: usize| c.saturating_sub(1)..(c + 2).min(end);
-                near(j, down).any(|j| near(i, across).any(|i| top[j * across + i] > floor))
+                let around = near(b / across, down)
+                    .flat_map(|j| near(b % across, across).map(move |i| top[j * across + i]));
+                worth(around.fold(0.0, f32::max))
             })
             .collect();
-        Self { blocks, across }
+        Self {
+            blocks,
+            across,
+            down,
+        }
     }
 
-    fn at(&self, i: usize, j: usize) -> bool {
-        self.blocks[(j / BLOCK) * self.across + i / BLOCK]
+    /// Between the middles of blocks it is interpolated, so that lines fade smoothly.
+    fn at(&self, i: usize, j: usize) -> f32 {
+        let place = |k: usize, end: usize| {
+            let x = ((k as f32 + 0.5) / BLOCK as f32 - 0.5).clamp(0.0, (end - 1) as f32);
+            let low = (x as usize).min(end.saturating_sub(2));
+            (low, (low + 1).min(end - 1), x - low as f32)
+        };
+        let (i0, i1, s) = place(i, self.across);
+        let (j0, j1, t) = place(j, self.down);
+        let at = |i: usize, j: usize| self.blocks[j * self.across + i];
+        let row = |j: usize| at(i0, j) + s * (at(i1, j) - at(i0, j));
+        row(j0) + t * (row(j1) - row(j0))
     }
 }
 
 #[cfg(test)]
 mod tests {
+    use super::super::example::box_modes;
     use super::super::place::{Area, View};
     use super::*;
-    use crate::geometry::{Outline, Point};
-    use crate::modes::Modes;
 
     #[test]
     fn the_nodes_of_a_box_mode_are_straight_and_in_place() {
-        let at = |x, y| Point { x, y };
-        let outline = Outline::polygon(&[at(0.0, 0.0), at(3.0, 0.0), at(3.0, 2.0), at(0.0, 2.0)]);
-        let modes = Modes::placeholder(outline, vec![(3, 1)]);
+        let modes = box_modes();
         let area = Area {
             left: 0.0,
             top: 0.0,
@@ -136,13 +166,17 @@ mod tests {
             height: 200.0,
         };
         let view = View::fit(modes.outline().bounds(), area);
-        let field = Field::sample(&modes, 0, &view, 300, 200);
-        let path = nodal_lines(&field, |_, _| true).expect("two lines");
-        for p in path.points() {
+        let field = Field::sample(&modes, 3, &view, 300, 200);
+        let lines = nodal_lines(&field, |x, _| x < 299);
+        assert!(
+            lines.len() == 1 && lines[0].0 == 1.0,
+            "all in full strength"
+        );
+        for p in lines[0].1.points() {
             let third = p.x / (299.3 / 3.0);
             assert!((third - third.round()).abs() < 1e-3, "{p:?}");
             assert!((0.9..2.1).contains(&third));
         }
-        assert!(nodal_lines(&field, |_, _| false).is_none());
+        assert!(nodal_lines(&field, |_, _| false).is_empty());
     }
 }

@@ -100,10 +100,12 @@ impl View {
     }
 }
 
-/// How much of each pixel lies inside a path, 0 to 255, row by row from the top.
-pub fn coverage(path: &Path, width: u32, height: u32) -> Option<Mask> {
-    let mut mask = Mask::new(width, height)?;
-    mask.fill_path(path, FillRule::EvenOdd, true, Transform::identity());
+/// How much of each pixel of a rectangle of the page lies inside a path, 0 to 255, row by row from
+/// the top; `start` and `size` are whole pixels.
+pub fn coverage(path: &Path, start: (usize, usize), size: (usize, usize)) -> Option<Mask> {
+    let mut mask = Mask::new(size.0 as u32, size.1 as u32)?;
+    let shift = Transform::from_translate(-(start.0 as f32), -(start.1 as f32));
+    mask.fill_path(path, FillRule::EvenOdd, true, shift);
     Some(mask)
 }
 
@@ -162,7 +164,8 @@ mod tests {
                 height: 300.0,
             },
         );
-        let mask = coverage(&view.path(&disc).expect("a loop"), 320, 320).expect("a page");
+        let mask =
+            coverage(&view.path(&disc).expect("a loop"), (5, 7), (310, 310)).expect("a page");
         let sum: f64 = mask.data().iter().map(|&c| f64::from(c) / 255.0).sum();
         let exact = std::f64::consts::PI * 150.0 * 150.0;
         // 940 edge pixels, each known to a sixteenth

@@ -19,6 +19,8 @@ const FOOTER: f64 = 126.0;
 const LEGEND: f64 = 40.0;
 /// Space between number and energy, in type sizes.
 const APART: f32 = 0.55;
+/// The common scale ends at this many times the median of the modes' peaks in |ψ|.
+const LATITUDE: f64 = 1.2;
 /// How far the type of legends may shrink.
 const SMALLEST: f32 = 0.72;
 
@@ -76,12 +78,13 @@ pub fn sheet(
             (view, Field::sample(modes, k, &view, w, h))
         })
         .collect();
-    let peak = fields.iter().fold(0.0, |m: f64, f| m.max(f.1.peak));
+    let (peak, clipped) = exposure(fields.iter().map(|f| f.1.peak));
     let style = Style {
         show: look.show,
         nodes: look.nodes,
         peak,
         line: 1.8,
+        clipped,
     };
     let type_size = SMALL * page.unit * ((wide / unit) as f32 / widest).clamp(SMALLEST, 1.0);
     for (k, (view, field)) in fields.iter().enumerate() {
@@ -101,6 +104,16 @@ pub fn sheet(
         page: page.canvas,
         text,
     })
+}
+
+/// The |ψ| at the end of the common scale, and whether some panels go beyond: a mode with one
+/// sharp peak would make all others pale, so the scale ends near the peaks of most.
+fn exposure(peaks: impl Iterator<Item = f64>) -> (f64, bool) {
+    let mut peaks: Vec<f64> = peaks.collect();
+    peaks.sort_by(f64::total_cmp);
+    let highest = peaks.last().copied().unwrap_or(0.0);
+    let end = LATITUDE * peaks.get(peaks.len() / 2).copied().unwrap_or(0.0);
+    (end.min(highest), end < highest)
 }
 
 /// Columns for `count` panels of this height to width, so that the page is about as high as wide
@@ -170,7 +183,7 @@ fn frame(page: &mut Page, (scale, room): (f64, f32), style: &Style, caption: &Ca
         width: f64::from(520.0 * u),
         height: f64::from(18.0 * u),
     };
-    colour_bar(page, bar, style.show, style.peak, &caption.units);
+    colour_bar(page, bar, style, &caption.units);
     scale_bar(page, left, foot + 55.0 * u, room, scale, &caption.units);
     if !caption.model.is_empty() {
         let size = 0.88 * SMALL * u;
