@@ -11,7 +11,7 @@ mod matvec;
 mod order;
 mod slices;
 
-pub use blocks::symmetric_eigen;
+pub use blocks::{combine, project, symmetric_eigen};
 pub use factor::{Factor, Plan};
 pub use slices::solve;
 

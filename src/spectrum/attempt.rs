@@ -57,7 +57,9 @@ impl Attempt {
         let places = lattice.places();
         timings.operators += ms(clock);
         let clock = Instant::now();
-        let tail = Tail::new(&pair, &border, |b| {
+        let tail = if border.is_empty() {
+            Tail::default()
+        } else {
             let k = sprs::CsMat::new(
                 (pair.len(), pair.len()),
                 pair.starts.clone(),
@@ -66,11 +68,11 @@ impl Attempt {
             );
             let plan = eigen::Plan::new(&k, &places, 0, MEMORY)?;
             let mut factor = Factor::new(&plan, &k, None)?;
-            for b in b {
-                factor.solve(b, 1);
-            }
-            Ok(())
-        })?;
+            Tail::new(&pair, &border, |b, count| {
+                factor.solve(b, count);
+                Ok(())
+            })?
+        };
         timings.factor += ms(clock);
         let clock = Instant::now();
         let system = System::new(pair, &tail, places);
