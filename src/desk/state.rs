@@ -6,7 +6,7 @@ use super::document::Document;
 use super::layout::{Layout, Tiles, divide};
 use super::paint::Paint;
 use super::plate::{Exposure, Look, Sight, Strokes, inside};
-use super::portrait::{Portrait, area};
+use super::portrait::Portrait;
 use crate::geometry::{Box2, Point};
 use crate::progress::Step;
 use crate::spectrum::Spectrum;
@@ -170,7 +170,7 @@ impl State {
         let bounds = document.outline.bounds();
         let lines = super::plate::flatten(&document.outline);
         Self {
-            area: area(&lines),
+            area: document.outline.area(),
             lines: Arc::new(lines),
             bounds,
             document: Arc::new(document),

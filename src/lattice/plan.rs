@@ -65,7 +65,12 @@ impl Plan {
                     reach: free,
                 });
             }
-            corners.push(CornerSpace::new(&corner, free, p_most(demand.degree), edges));
+            corners.push(CornerSpace::new(
+                &corner,
+                free,
+                p_most(demand.degree),
+                edges,
+            ));
         }
         split_for(&grid, &list, &mut splits);
         Self {
