@@ -164,7 +164,7 @@ fn lay_out(negative: bool, digits: i128, bracket: i128, place: i32) -> String {
     } else {
         first(digits).max(first(bracket))
     };
-    if top >= 7 || (top < -4) {
+    if !(-4..7).contains(&top) {
         let decimals = (top - place).max(0);
         return format!(
             "{sign}{}({bracket})e{top}",

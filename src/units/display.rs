@@ -59,7 +59,7 @@ pub fn duration(seconds: f64) -> String {
     }
     let size = seconds.abs();
     let (factor, symbol) = match size {
-        s if s == 0.0 => return "0 s".to_owned(),
+        0.0 => return "0 s".to_owned(),
         s if s < 999.5e-9 => (1e9, "ns"),
         s if s < 999.5e-6 => (1e6, "µs"),
         s if s < 999.5e-3 => (1e3, "ms"),
