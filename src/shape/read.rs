@@ -4,7 +4,7 @@ use super::fault::Fault;
 use super::materials::{MATERIALS, material};
 use super::model::{Finish, Host, Scale, Solve, Step};
 use super::near;
-use super::reader::{Reader, Section, found};
+use super::reader::{Reader, Section};
 use super::sizes::{self, Size, Sizes};
 use super::steps;
 use crate::units::Dimension::{Length, Mass, Number};
