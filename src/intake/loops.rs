@@ -1,6 +1,7 @@
 //! From closed point sequences to an outline: orientation by nesting, pieces by fitting.
 
 use super::Taken;
+use super::fit::{self, Trace};
 use super::trace::area;
 use crate::geometry::{Box2, Loop, Outline, Piece, Point};
 
@@ -8,12 +9,37 @@ use crate::geometry::{Box2, Loop, Outline, Piece, Point};
 /// within that distance of them.
 pub(super) fn taken(mut polygons: Vec<Vec<Point>>, smooth: Option<f64>) -> Taken {
     orient(&mut polygons);
-    let _ = smooth;
-    let loops = polygons.iter().map(|p| straight(p)).collect();
+    let trace = smooth.map(Trace::points);
+    let loops = polygons
+        .iter()
+        .map(|p| {
+            trace
+                .and_then(|t| fit::fit(p, &t))
+                .unwrap_or_else(|| straight(p))
+        })
+        .collect();
     Taken {
         outline: Outline { loops },
         notes: Vec::new(),
     }
+}
+
+/// A loop of lines and Bézier curves with every length multiplied.
+pub(super) fn scaled(whole: &Loop, factor: f64) -> Loop {
+    let pieces = whole
+        .pieces
+        .iter()
+        .map(|piece| match piece {
+            Piece::Bezier { points } => Piece::Bezier {
+                points: points.map(|p| p * factor),
+            },
+            other => Piece::Line {
+                from: other.start() * factor,
+                to: other.end() * factor,
+            },
+        })
+        .collect();
+    Loop { pieces }
 }
 
 /// A closed polygon as a loop of straight edges.

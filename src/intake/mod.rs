@@ -5,6 +5,7 @@
 
 mod crossing;
 mod error;
+mod fit;
 mod grey;
 mod loops;
 mod picture;

@@ -1,5 +1,6 @@
 //! Outlines from a PNG mask.
 
+use super::fit::{self, Trace};
 use super::grey::GreyMap;
 use super::trace::{area, contours};
 use super::{IntakeError, Taken, loops};
@@ -21,7 +22,7 @@ pub struct Reading {
     /// Which side is the shape.
     pub inside: Inside,
     /// How far the outline may keep from the traced edge, in pixels; `None`: 0.1 for a mask with
-    /// grey levels at its edges, 0.5 for one of black and white only.
+    /// grey levels at its edges, 0.45 for one of black and white only.
     pub smooth: Option<f64>,
 }
 
@@ -72,9 +73,26 @@ pub fn picture(path: &Path, reading: &Reading) -> Result<Taken, IntakeError> {
             path.display()
         ));
     }
-    let outline = Outline {
-        loops: found.iter().map(|c| loops::straight(c)).collect(),
-    };
-    let _ = map.between();
+    let length: f64 = found.iter().map(|c| c.len() as f64).sum();
+    // An edge of grey pixels has about one of them per pixel of length; on edges along the axes
+    // they may all be full or empty, and need none.
+    let grey = map.between() as f64 > 0.2 * length;
+    if !grey {
+        notes.push(format!(
+            "{}: black and white only, so the edge is known to about half a pixel ({} units)",
+            path.display(),
+            0.5 * reading.pixel
+        ));
+    }
+    let mut trace = if grey { Trace::GREY } else { Trace::STEPS };
+    if let Some(tolerance) = reading.smooth {
+        trace = trace.loosened(tolerance);
+    }
+    let loops = found
+        .iter()
+        .map(|c| fit::fit(c, &trace).unwrap_or_else(|| loops::straight(c)))
+        .map(|l| loops::scaled(&l, reading.pixel))
+        .collect();
+    let outline = Outline { loops };
     Ok(Taken { outline, notes })
 }

@@ -19,30 +19,65 @@ pub(super) struct Ends {
 }
 
 /// Fits curves to `points`, handing each to `out` in order; consecutive ones share their tangent.
-pub(super) fn fit(points: &[Point], ends: Ends, trace: &Trace, depth: usize, out: &mut dyn FnMut([Point; 4])) {
+pub(super) fn fit(
+    points: &[Point],
+    ends: Ends,
+    trace: &Trace,
+    depth: usize,
+    out: &mut dyn FnMut([Point; 4]),
+) {
     let turned = total_turn(points, &ends, trace);
     let split_by_turn = turned > 2.0;
     let chord = (ends.to - ends.from).norm();
+    let mut worst = 0;
     if !split_by_turn || points.len() < 8 || depth >= DEPTH {
-        let (curve, miss) = best(points, &ends);
+        let (curve, miss, place) = best(points, &ends);
+        worst = place;
         let short = chord < trace.window.min(20.0 * trace.tolerance) * 0.5 || points.len() < 8;
         if miss <= trace.tolerance || short || depth >= DEPTH {
             out(curve);
             return;
         }
     }
-    let middle = if split_by_turn { half_turn(points, trace) } else { points.len() / 2 };
+    let middle = if split_by_turn {
+        half_turn(points, trace)
+    } else {
+        worst
+    };
     let middle = middle.clamp(points.len() / 4, points.len() - 1 - points.len() / 4);
     let (at, tangent) = joint(points, middle, trace);
-    fit(&points[..=middle], Ends { to: at, arriving: tangent, ..ends }, trace, depth + 1, out);
-    fit(&points[middle..], Ends { from: at, leaving: tangent, ..ends }, trace, depth + 1, out);
+    fit(
+        &points[..=middle],
+        Ends {
+            to: at,
+            arriving: tangent,
+            ..ends
+        },
+        trace,
+        depth + 1,
+        out,
+    );
+    fit(
+        &points[middle..],
+        Ends {
+            from: at,
+            leaving: tangent,
+            ..ends
+        },
+        trace,
+        depth + 1,
+        out,
+    );
 }
 
 /// The point and tangent at a place inside a stretch: a parabola over the widest window that
 /// still follows the points.
 fn joint(points: &[Point], middle: usize, trace: &Trace) -> (Point, Point) {
     let room = middle.min(points.len() - 1 - middle);
-    let mut best = (points[middle], unit(points[(middle + 1).min(points.len() - 1)] - points[middle.saturating_sub(1)]));
+    let mut best = (
+        points[middle],
+        unit(points[(middle + 1).min(points.len() - 1)] - points[middle.saturating_sub(1)]),
+    );
     let mut half = 2;
     while half <= room {
         let (at, tangent, miss) = parabola(points, middle, half);
@@ -61,7 +96,10 @@ fn parabola(points: &[Point], middle: usize, half: usize) -> (Point, Point, f64)
     let (mut s2, mut s4) = (0.0, 0.0);
     let (mut m0, mut m1, mut m2) = (Point::default(), Point::default(), Point::default());
     let scale = 1.0 / half as f64;
-    let all = || (middle - half..=middle + half).map(|k| ((k as f64 - middle as f64) * scale, points[k] - origin));
+    let all = || {
+        (middle - half..=middle + half)
+            .map(|k| ((k as f64 - middle as f64) * scale, points[k] - origin))
+    };
     for (u, p) in all() {
         s2 += u * u;
         s4 += u.powi(4);
@@ -74,22 +112,32 @@ fn parabola(points: &[Point], middle: usize, half: usize) -> (Point, Point, f64)
     let c0 = (m0 * s4 - m2 * s2) * (1.0 / determinant);
     let c2 = (m2 * s0 - m0 * s2) * (1.0 / determinant);
     let c1 = m1 * (1.0 / s2);
-    let miss = all().map(|(u, p)| (p - c0 - c1 * u - c2 * (u * u)).norm()).fold(0.0, f64::max);
+    let miss = all()
+        .map(|(u, p)| (p - c0 - c1 * u - c2 * (u * u)).norm())
+        .fold(0.0, f64::max);
     (origin + c0, unit(c1), miss)
 }
 
 /// Directions of chords about a third of a window long, which waver little.
 fn chords(points: &[Point], trace: &Trace) -> Vec<Point> {
     let length: f64 = points.windows(2).map(|w| (w[1] - w[0]).norm()).sum();
-    let step = (trace.window * 0.5 / (length / points.len() as f64).max(f64::MIN_POSITIVE)).ceil() as usize;
+    let step = (trace.window * 0.5 / (length / points.len() as f64).max(f64::MIN_POSITIVE)).ceil()
+        as usize;
     let step = step.clamp(1, points.len().max(2) / 2);
-    (0..points.len().saturating_sub(step)).step_by(step).map(|k| points[k + step] - points[k]).collect()
+    (0..points.len().saturating_sub(step))
+        .step_by(step)
+        .map(|k| points[k + step] - points[k])
+        .collect()
 }
 
 /// By how much the stretch turns in all, left and right counted alike.
 fn total_turn(points: &[Point], ends: &Ends, trace: &Trace) -> f64 {
     let chords = chords(points, trace);
-    let inner: f64 = chords.windows(2).map(|w| turn(w[0], w[1])).map(f64::abs).sum();
+    let inner: f64 = chords
+        .windows(2)
+        .map(|w| turn(w[0], w[1]))
+        .map(f64::abs)
+        .sum();
     let (Some(first), Some(last)) = (chords.first(), chords.last()) else {
         return 0.0;
     };
@@ -111,26 +159,26 @@ fn half_turn(points: &[Point], trace: &Trace) -> usize {
     points.len() / 2
 }
 
-/// The best curve with these ends, and how far a point is from it.
-fn best(points: &[Point], ends: &Ends) -> ([Point; 4], f64) {
+/// The best curve with these ends, how far a point is from it at most, and which one.
+fn best(points: &[Point], ends: &Ends) -> ([Point; 4], f64, usize) {
     let mut parameters = by_chord(points, ends);
     let mut curve = least_squares(points, &parameters, ends);
-    let mut miss = largest_miss(points, &parameters, &curve);
+    let (mut miss, mut worst) = largest_miss(points, &parameters, &curve);
     for _ in 0..ROUNDS {
         for (t, p) in parameters.iter_mut().zip(points) {
             *t = nearer(&curve, *p, *t);
         }
         let next = least_squares(points, &parameters, ends);
-        let next_miss = largest_miss(points, &parameters, &next);
+        let (next_miss, next_worst) = largest_miss(points, &parameters, &next);
         let settled = (miss - next_miss).abs() < 1e-3 * miss;
         if next_miss <= miss {
-            (curve, miss) = (next, next_miss);
+            (curve, miss, worst) = (next, next_miss, next_worst);
         }
         if settled || next_miss > miss {
             break;
         }
     }
-    (curve, miss)
+    (curve, miss, worst)
 }
 
 /// First guess of the parameters: the share of the length from end to end.
@@ -165,7 +213,10 @@ fn least_squares(points: &[Point], parameters: &[f64], ends: &Ends) -> [Point; 4
     let chord = (ends.to - ends.from).norm();
     let determinant = uu * vv - uv * uv;
     let (mut left, mut right) = if determinant > 1e-12 * uu * vv {
-        ((ru * vv - rv * uv) / determinant, (rv * uu - ru * uv) / determinant)
+        (
+            (ru * vv - rv * uv) / determinant,
+            (rv * uu - ru * uv) / determinant,
+        )
     } else {
         (chord / 3.0, chord / 3.0)
     };
@@ -174,7 +225,12 @@ fn least_squares(points: &[Point], parameters: &[f64], ends: &Ends) -> [Point; 4
     if !sound(left) || !sound(right) {
         (left, right) = (chord / 3.0, chord / 3.0);
     }
-    [ends.from, ends.from + u * left, ends.to + v * right, ends.to]
+    [
+        ends.from,
+        ends.from + u * left,
+        ends.to + v * right,
+        ends.to,
+    ]
 }
 
 fn at(c: &[Point; 4], t: f64) -> Point {
@@ -186,7 +242,9 @@ fn at(c: &[Point; 4], t: f64) -> Point {
 fn nearer(c: &[Point; 4], p: Point, t: f64) -> f64 {
     let s = 1.0 - t;
     let d = at(c, t) - p;
-    let first = (c[1] - c[0]) * (3.0 * s * s) + (c[2] - c[1]) * (6.0 * s * t) + (c[3] - c[2]) * (3.0 * t * t);
+    let first = (c[1] - c[0]) * (3.0 * s * s)
+        + (c[2] - c[1]) * (6.0 * s * t)
+        + (c[3] - c[2]) * (3.0 * t * t);
     let second = (c[2] - c[1] * 2.0 + c[0]) * (6.0 * s) + (c[3] - c[2] * 2.0 + c[1]) * (6.0 * t);
     let slope = first.dot(first) + d.dot(second);
     if slope <= 0.0 {
@@ -195,6 +253,12 @@ fn nearer(c: &[Point; 4], p: Point, t: f64) -> f64 {
     (t - d.dot(first) / slope).clamp(0.0, 1.0)
 }
 
-fn largest_miss(points: &[Point], parameters: &[f64], c: &[Point; 4]) -> f64 {
-    points.iter().zip(parameters).map(|(p, &t)| (at(c, t) - *p).norm()).fold(0.0, f64::max)
+fn largest_miss(points: &[Point], parameters: &[f64], c: &[Point; 4]) -> (f64, usize) {
+    let misses = points
+        .iter()
+        .zip(parameters)
+        .map(|(p, &t)| (at(c, t) - *p).norm());
+    misses
+        .enumerate()
+        .fold((0.0, 0), |m, (k, d)| if d > m.0 { (d, k) } else { m })
 }

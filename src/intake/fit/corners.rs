@@ -25,20 +25,28 @@ pub(super) struct Corner {
 /// it.
 pub(super) fn find(samples: &Samples, trace: &Trace) -> Vec<Corner> {
     let n = samples.len() as i64;
-    // On a short loop the windows of both sides must not meet at the back.
-    let shrink = (samples.step * n as f64 / (5.0 * (trace.window + trace.blur))).min(1.0);
-    let skip = samples.count(trace.blur * shrink);
-    let window = samples.count(trace.window * shrink).max(3);
-    let sides = |k: i64| {
+    let skip = samples.count(trace.blur);
+    let window = samples.count(trace.window).max(3);
+    let sides = |k: i64, window: i64| {
         (
             samples.parabola(k - skip - window, k - skip, k),
             samples.parabola(k + skip, k + skip + window, k),
         )
     };
+    let bend = |k: i64, window: i64| {
+        let (before, after) = sides(k, window);
+        turn(before.tangent, after.tangent)
+    };
+    // Where a straight edge runs into an arc, a window over the joint continues wrongly; half a
+    // window does so elsewhere, so that the lesser of both is large at corners only.
     let bends: Vec<f64> = (0..n)
         .map(|k| {
-            let (before, after) = sides(k);
-            turn(before.tangent, after.tangent)
+            let (whole, half) = (bend(k, window), bend(k, window / 2));
+            if whole * half <= 0.0 {
+                0.0
+            } else {
+                whole.signum() * whole.abs().min(half.abs())
+            }
         })
         .collect();
     let reach = skip + window / 2;
@@ -52,14 +60,25 @@ pub(super) fn find(samples: &Samples, trace: &Trace) -> Vec<Corner> {
         if size < trace.bend || beaten {
             continue;
         }
-        let (before, after) = sides(k);
+        // The bend is the same all over the blur; the corner is where the tangents cross.
+        let (before, after) = sides(k, window);
         let Some(at) = crossing((before.at, before.tangent), (after.at, after.tangent)) else {
             continue;
         };
-        let distance = (k - skip - 1..=k + skip + 1)
-            .map(|j| (samples.at(j) - at).norm())
-            .fold(f64::INFINITY, f64::min);
-        if distance > allowance(bends[k as usize], trace) {
+        let (distance, k) = (k - reach..=k + reach)
+            .map(|j| ((samples.at(j) - at).norm(), j))
+            .fold((f64::INFINITY, k), |m, d| if d.0 < m.0 { d } else { m });
+        if distance > allowance(bends[k.rem_euclid(n) as usize], trace) {
+            continue;
+        }
+        let (before, after) = sides(k, window);
+        let at = crossing((before.at, before.tangent), (after.at, after.tangent)).unwrap_or(at);
+        if corners.iter().any(|c: &Corner| {
+            (c.sample - k)
+                .rem_euclid(n)
+                .min((k - c.sample).rem_euclid(n))
+                < skip
+        }) {
             continue;
         }
         corners.push(Corner {
@@ -69,6 +88,7 @@ pub(super) fn find(samples: &Samples, trace: &Trace) -> Vec<Corner> {
             leaving: (after.at, after.tangent),
         });
     }
+    corners.sort_by_key(|c| c.sample);
     corners
 }
 

@@ -38,12 +38,23 @@ pub(super) fn place(samples: &Samples, corners: &[Corner], trace: &Trace) -> Vec
         // Runs may cross the seam: look over a loop and a half, keep one loop's worth.
         let found = runs::find(samples, 0, n + n / 2, trace);
         let start = found.iter().find(|r| r.first > 0).map_or(0, |r| r.first);
-        marks.extend(found.into_iter().filter(|r| r.first >= start && r.last < start + n).map(Mark::Run));
+        marks.extend(
+            found
+                .into_iter()
+                .filter(|r| r.first >= start && r.last < start + n)
+                .map(Mark::Run),
+        );
     }
     for (k, corner) in corners.iter().enumerate() {
-        let next = corners.get(k + 1).map_or(corners[0].sample + n, |c| c.sample);
+        let next = corners
+            .get(k + 1)
+            .map_or(corners[0].sample + n, |c| c.sample);
         marks.push(Mark::Corner(*corner));
-        marks.extend(runs::find(samples, corner.sample + skip, next - skip, trace).into_iter().map(Mark::Run));
+        marks.extend(
+            runs::find(samples, corner.sample + skip, next - skip, trace)
+                .into_iter()
+                .map(Mark::Run),
+        );
     }
     if marks.is_empty() {
         return smooth(samples, trace);
@@ -51,7 +62,11 @@ pub(super) fn place(samples: &Samples, corners: &[Corner], trace: &Trace) -> Vec
     let mut knots = Vec::new();
     for k in 0..marks.len() {
         // The last mark is followed by the first, one loop on.
-        let (next, lap) = if k + 1 < marks.len() { (&marks[k + 1], 0) } else { (&marks[0], n) };
+        let (next, lap) = if k + 1 < marks.len() {
+            (&marks[k + 1], 0)
+        } else {
+            (&marks[0], n)
+        };
         match &marks[k] {
             Mark::Corner(corner) => {
                 let before = match marks[(k + marks.len() - 1) % marks.len()] {
@@ -73,7 +88,11 @@ pub(super) fn place(samples: &Samples, corners: &[Corner], trace: &Trace) -> Vec
 /// The line of a run that reaches up to a corner on its side (−1 before, 1 after).
 fn touching(run: Run, corner: i64, side: i64, samples: &Samples, trace: &Trace) -> Option<Run> {
     let n = samples.len() as i64;
-    let gap = if side > 0 { run.first - corner } else { corner - run.last };
+    let gap = if side > 0 {
+        run.first - corner
+    } else {
+        corner - run.last
+    };
     (gap.rem_euclid(n) <= reach(samples, trace)).then_some(run)
 }
 
@@ -84,7 +103,9 @@ fn reach(samples: &Samples, trace: &Trace) -> i64 {
 
 /// The knot of a corner, moved to where the lines beside it cross, if there are any.
 fn at_corner(corner: &Corner, before: Option<Run>, after: Option<Run>, skip: i64) -> Knot {
-    let line = |run: Option<Run>, otherwise: (Point, Point)| run.map_or(otherwise, |r| (r.point, r.direction));
+    let line = |run: Option<Run>, otherwise: (Point, Point)| {
+        run.map_or(otherwise, |r| (r.point, r.direction))
+    };
     let (a, b) = (line(before, corner.arriving), line(after, corner.leaving));
     Knot {
         at: crossing(a, b).unwrap_or(corner.at),
@@ -152,8 +173,12 @@ fn bend(a: &Run, b: &Run, samples: &Samples, trace: &Trace) -> Option<Point> {
         return None;
     }
     let at = crossing((a.point, a.direction), (b.point, b.direction))?;
-    let near = (a.last..=a.last + gap).map(|k| (samples.at(k) - at).norm()).fold(f64::INFINITY, f64::min);
-    let beyond = |run: &Run, end: i64, sign: f64| sign * (at - samples.at(end)).dot(run.direction) > -samples.step;
+    let near = (a.last..=a.last + gap)
+        .map(|k| (samples.at(k) - at).norm())
+        .fold(f64::INFINITY, f64::min);
+    let beyond = |run: &Run, end: i64, sign: f64| {
+        sign * (at - samples.at(end)).dot(run.direction) > -samples.step
+    };
     let outside = beyond(a, a.last, 1.0) && beyond(b, b.first, -1.0);
     (outside && near < 2.0 * trace.tolerance + 0.3 * trace.blur).then_some(at)
 }

@@ -77,12 +77,24 @@ impl Trace {
             ..self
         }
     }
+
+    /// The same for a loop so short that the windows of both sides would meet at its back.
+    fn shrunk(self, length: f64) -> Self {
+        let factor = (length / (5.0 * (self.window + self.blur))).min(1.0);
+        Self {
+            window: self.window * factor,
+            blur: self.blur * factor,
+            run: self.run * factor,
+            ..self
+        }
+    }
 }
 
 /// A closed trace as a loop of lines and Bézier curves within the tolerance of `trace`, run
 /// through in the same direction. Traces too short to judge stay polygons.
 pub(super) fn fit(points: &[Point], trace: &Trace) -> Option<Loop> {
     let samples = Samples::new(points, trace.window / 12.0)?;
+    let trace = &trace.shrunk(samples.length());
     let corners = corners::find(&samples, trace);
     let knots = knots::place(&samples, &corners, trace);
     let mut pieces = Vec::new();
@@ -102,12 +114,37 @@ pub(super) fn fit(points: &[Point], trace: &Trace) -> Option<Loop> {
 
 /// Bézier curves from one knot to the next.
 fn curve(samples: &Samples, from: &Knot, to: &Knot, trace: &Trace, out: &mut Vec<Piece>) {
-    let points = samples.between(from.last, to.first);
+    // A loop with a single knot comes back to it a whole lap later.
+    let count = (to.first - from.last).rem_euclid(samples.len() as i64);
+    let points = samples.between(from.last, from.last + count);
     let ends = bezier::Ends {
         from: from.at,
         leaving: from.leaving,
         to: to.at,
         arriving: to.arriving,
     };
-    bezier::fit(&points, ends, trace, 0, &mut |b| out.push(Piece::Bezier { points: b }));
+    bezier::fit(&points, ends, trace, 0, &mut |b| {
+        out.push(Piece::Bezier { points: b })
+    });
+}
+#[cfg(test)]
+mod tests {
+    use super::*;
+    #[test]
+    fn debug_square() {
+        let mut levels=vec![0u16;100*100];
+        for y in 0..100 { for x in 0..100 { let (dx,dy)=(x as i32-10,90-y as i32); if dx>=0&&dy>=0&&dx<80&&dy<80&&(dx<40||dy<40) {levels[y*100+x]=65535;}}}
+        let map=super::super::grey::GreyMap{width:100,height:100,levels};
+        let pts=super::super::trace::contours(&map,0.5).unwrap().remove(0);
+        let t=Trace::STEPS;
+        let samples=Samples::new(&pts,t.window/12.).unwrap();
+        println!("{} step {}",samples.len(),samples.step);
+        let c=corners::find(&samples,&t);
+        let sk=samples.count(t.blur);
+        for c in &c { println!("corner {} at {:?}",c.sample,c.at); }
+        for (k,c1) in c.iter().enumerate() { let next=c.get(k+1).map_or(c[0].sample+samples.len() as i64,|c|c.sample);
+            println!("  stretch run {}..{}",c1.sample+sk,next-sk);
+            for r in runs::find(&samples,c1.sample+sk,next-sk,&t) { println!("  run {} {} {:?}",r.first,r.last,r.direction);} }
+        for k in knots::place(&samples,&c,&t) { println!("knot {k:?}"); }
+    }
 }

@@ -72,7 +72,8 @@ fn settle(samples: &Samples, start: i64, end: i64, floor: i64, limit: i64, trace
     for _ in 0..3 {
         let fifth = (last - first) / 5;
         fitted = line(samples, first + fifth, last - fifth);
-        let near = |k: i64, share: f64| off(samples.at(k), &fitted).abs() <= share * trace.tolerance;
+        let near =
+            |k: i64, share: f64| off(samples.at(k), &fitted).abs() <= share * trace.tolerance;
         (first, last) = (first + fifth, last - fifth);
         while first > floor && near(first - 1, 0.5) {
             first -= 1;
@@ -101,16 +102,20 @@ fn bowed(samples: &Samples, run: &Run, trace: &Trace) -> bool {
     let tenth = (run.last - run.first) / 10;
     let (first, last) = (run.first + tenth, run.last - tenth);
     let middle = (first + last) / 2;
-    let ends = [samples.parabola(first, last, first).at, samples.parabola(first, last, last).at];
+    let ends = [
+        samples.parabola(first, last, first).at,
+        samples.parabola(first, last, last).at,
+    ];
     let bow = samples.parabola(first, last, middle).at - (ends[0] + ends[1]) * 0.5;
-    bow.norm() > 0.25 * trace.tolerance
+    run.direction.cross(bow).abs() > 0.25 * trace.tolerance
 }
 
 /// The line of least squares through samples: their mean and the main axis of their spread.
 fn line(samples: &Samples, first: i64, last: i64) -> (Point, Point) {
     let n = (last - first + 1) as f64;
     let origin = samples.at(first);
-    let mean = (first..=last).fold(Point::default(), |s, k| s + (samples.at(k) - origin)) * (1.0 / n);
+    let mean =
+        (first..=last).fold(Point::default(), |s, k| s + (samples.at(k) - origin)) * (1.0 / n);
     let (mut xx, mut xy, mut yy) = (0.0, 0.0, 0.0);
     for k in first..=last {
         let d = samples.at(k) - origin - mean;
@@ -130,5 +135,7 @@ fn off(p: Point, line: &(Point, Point)) -> f64 {
 }
 
 fn miss(samples: &Samples, first: i64, last: i64, line: &(Point, Point)) -> f64 {
-    (first..=last).map(|k| off(samples.at(k), line).abs()).fold(0.0, f64::max)
+    (first..=last)
+        .map(|k| off(samples.at(k), line).abs())
+        .fold(0.0, f64::max)
 }

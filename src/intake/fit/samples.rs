@@ -27,7 +27,9 @@ impl Samples {
     /// Samples about `step` apart; `None` when the curve has fewer than 16 of them.
     pub(super) fn new(points: &[Point], step: f64) -> Option<Self> {
         let n = points.len();
-        let length: f64 = (0..n).map(|k| (points[(k + 1) % n] - points[k]).norm()).sum();
+        let length: f64 = (0..n)
+            .map(|k| (points[(k + 1) % n] - points[k]).norm())
+            .sum();
         let count = (length / step).min(MOST).floor() as usize;
         if count < 16 || !length.is_finite() {
             return None;
@@ -41,7 +43,11 @@ impl Samples {
                 let (a, b) = (points[edge % n], points[(edge + 1) % n]);
                 let size = (b - a).norm();
                 if before + size >= wanted || edge + 1 >= n {
-                    let t = if size > 0.0 { ((wanted - before) / size).min(1.0) } else { 0.0 };
+                    let t = if size > 0.0 {
+                        ((wanted - before) / size).min(1.0)
+                    } else {
+                        0.0
+                    };
                     out.push(a + (b - a) * t);
                     break;
                 }
@@ -54,6 +60,11 @@ impl Samples {
 
     pub(super) fn len(&self) -> usize {
         self.points.len()
+    }
+
+    /// The length of the whole curve.
+    pub(super) fn length(&self) -> f64 {
+        self.step * self.points.len() as f64
     }
 
     /// Sample `k`, counted round the curve in either direction.
@@ -117,7 +128,11 @@ impl Samples {
 /// The unit vector along `v`; along x when it vanishes.
 pub(super) fn unit(v: Point) -> Point {
     let size = v.norm();
-    if size > 0.0 { v * (1.0 / size) } else { pt(1.0, 0.0) }
+    if size > 0.0 {
+        v * (1.0 / size)
+    } else {
+        pt(1.0, 0.0)
+    }
 }
 
 /// The angle from `a` to `b`, in (−π, π].
