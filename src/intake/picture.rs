@@ -22,7 +22,7 @@ pub struct Reading {
     /// Which side is the shape.
     pub inside: Inside,
     /// How far the outline may keep from the traced edge, in pixels; `None`: 0.1 for a mask with
-    /// grey levels at its edges, 0.45 for one of black and white only.
+    /// grey levels at its edges, 0.9 for one of black and white only.
     pub smooth: Option<f64>,
 }
 

@@ -43,13 +43,14 @@ impl Trace {
         run: 8.0,
     };
 
-    /// A mask of black and white only, traced in pixels: the edge wavers by a third of a pixel.
+    /// A mask of black and white only, traced in pixels: the edge wavers by a third of a pixel,
+    /// and where a large arc runs along an axis it is flat for some thirty pixels.
     pub(super) const STEPS: Self = Self {
-        tolerance: 0.45,
+        tolerance: 0.9,
         blur: 2.0,
-        window: 10.0,
-        bend: 0.6,
-        run: 20.0,
+        window: 16.0,
+        bend: 0.5,
+        run: 30.0,
     };
 
     /// Points that waver by `tolerance` about a smooth edge.
@@ -126,25 +127,4 @@ fn curve(samples: &Samples, from: &Knot, to: &Knot, trace: &Trace, out: &mut Vec
     bezier::fit(&points, ends, trace, 0, &mut |b| {
         out.push(Piece::Bezier { points: b })
     });
-}
-#[cfg(test)]
-mod tests {
-    use super::*;
-    #[test]
-    fn debug_square() {
-        let mut levels=vec![0u16;100*100];
-        for y in 0..100 { for x in 0..100 { let (dx,dy)=(x as i32-10,90-y as i32); if dx>=0&&dy>=0&&dx<80&&dy<80&&(dx<40||dy<40) {levels[y*100+x]=65535;}}}
-        let map=super::super::grey::GreyMap{width:100,height:100,levels};
-        let pts=super::super::trace::contours(&map,0.5).unwrap().remove(0);
-        let t=Trace::STEPS;
-        let samples=Samples::new(&pts,t.window/12.).unwrap();
-        println!("{} step {}",samples.len(),samples.step);
-        let c=corners::find(&samples,&t);
-        let sk=samples.count(t.blur);
-        for c in &c { println!("corner {} at {:?}",c.sample,c.at); }
-        for (k,c1) in c.iter().enumerate() { let next=c.get(k+1).map_or(c[0].sample+samples.len() as i64,|c|c.sample);
-            println!("  stretch run {}..{}",c1.sample+sk,next-sk);
-            for r in runs::find(&samples,c1.sample+sk,next-sk,&t) { println!("  run {} {} {:?}",r.first,r.last,r.direction);} }
-        for k in knots::place(&samples,&c,&t) { println!("knot {k:?}"); }
-    }
 }

@@ -19,8 +19,6 @@ pub(super) struct Parabola {
     pub(super) at: Point,
     /// The unit tangent there, along the trace.
     pub(super) tangent: Point,
-    /// Largest distance of a sample from the parabola.
-    pub(super) miss: f64,
 }
 
 impl Samples {
@@ -113,14 +111,10 @@ impl Samples {
         };
         let c1 = m1 * (1.0 / s2.max(f64::MIN_POSITIVE));
         let value = |u: f64| c0 + c1 * u + c2 * (u * u);
-        let miss = (first..=last)
-            .map(|k| (self.at(k) - origin - value((k as f64 - middle) / half)).norm())
-            .fold(0.0, f64::max);
         let u = (place as f64 - middle) / half;
         Parabola {
             at: origin + value(u),
             tangent: unit(c1 + c2 * (2.0 * u)),
-            miss,
         }
     }
 }
