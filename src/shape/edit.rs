@@ -91,7 +91,11 @@ fn locate<'d>(
         }
         let word = parts.join(".");
         let all: Vec<&str> = known.iter().map(String::as_str).collect();
-        let by_key = known.iter().find(|k| k.rsplit('.').next() == Some(&word));
+        let last = |k: &str| k.rsplit('.').next().unwrap_or_default().to_owned();
+        // A key without its table: `accuracy` for solve.accuracy.
+        let leaves: Vec<String> = known.iter().map(|k| last(k)).collect();
+        let by_key = near::nearest(&word, leaves.iter().map(String::as_str))
+            .and_then(|leaf| known.iter().find(|k| last(k) == leaf));
         let remedy = match by_key {
             Some(k) => format!("did you mean `{k}`?"),
             None => near::remedy(&word, &all, ""),
