@@ -209,7 +209,7 @@ impl Document {
     /// Unreadable files, figures that cross themselves, steps and finishes that leave nothing;
     /// each names its step and line.
     pub fn outline(&self) -> Result<ShapeOutline, ShapeErrors> {
-        let mut made = build::outline(&self.model, &self.text, &self.folder, &self.traces)
+        let mut made = build::outline(&self.model, &self.folder, &self.traces)
             .map_err(|faults| ShapeErrors::new(&self.file, &self.text, faults))?;
         made.notes.splice(0..0, self.model.notes.iter().cloned());
         Ok(made)

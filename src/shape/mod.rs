@@ -10,6 +10,7 @@ mod document;
 mod edit;
 mod expression;
 mod fault;
+mod figure;
 mod materials;
 mod model;
 mod near;

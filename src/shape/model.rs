@@ -75,7 +75,7 @@ pub enum Figure {
         half_axes: Point,
     },
     Rectangle {
-        centre: Point,
+        corner: Point,
         size: Point,
     },
     Polygon {

@@ -39,6 +39,9 @@ pub(super) struct Model {
     pub(super) host: Option<Host>,
     pub(super) steps: Vec<Step>,
     pub(super) finish: Finish,
+    /// The bytes of `round` and of `grow`, for their faults.
+    pub(super) round: Range<usize>,
+    pub(super) grow: Range<usize>,
     pub(super) solve: Solve,
     pub(super) notes: Vec<String>,
 }
@@ -78,7 +81,7 @@ pub(super) fn read(text: &str) -> Result<Model, Vec<Fault>> {
     }
     let host = read_host(&mut reader, top, scale);
     let steps = steps::read(&mut reader, top);
-    let finish = read_finish(&mut reader, top);
+    let (finish, round, grow) = read_finish(&mut reader, top);
     let solve = read_solve(&mut reader, top);
     if !reader.faults.is_empty() {
         return Err(reader.faults);
@@ -96,6 +99,8 @@ pub(super) fn read(text: &str) -> Result<Model, Vec<Fault>> {
         host,
         steps,
         finish,
+        round,
+        grow,
         solve,
         notes,
     })
@@ -254,9 +259,9 @@ fn read_host(reader: &mut Reader<'_>, top: Section<'_>, scale: Scale) -> Option<
     })
 }
 
-fn read_finish(reader: &mut Reader<'_>, top: Section<'_>) -> Finish {
+fn read_finish(reader: &mut Reader<'_>, top: Section<'_>) -> (Finish, Range<usize>, Range<usize>) {
     let Some(table) = reader.table(top, "finish") else {
-        return Finish::default();
+        return Default::default();
     };
     let span = top.key_span("finish");
     let section = Section {
@@ -274,7 +279,8 @@ fn read_finish(reader: &mut Reader<'_>, top: Section<'_>) -> Finish {
         );
     }
     let grow = reader.number(section, "grow", Length).unwrap_or(0.0);
-    Finish { round, grow }
+    let spans = (value_span(section, "round"), value_span(section, "grow"));
+    (Finish { round, grow }, spans.0, spans.1)
 }
 
 fn read_solve(reader: &mut Reader<'_>, top: Section<'_>) -> Solve {

@@ -257,16 +257,16 @@ fn read_figure(reader: &mut Reader<'_>, section: Section<'_>, kind: &str) -> Opt
                     );
                 }
                 let corner = reader.point(section, "corner");
-                let size = size?;
                 return Some(Figure::Rectangle {
-                    centre: corner? + size * 0.5,
-                    size,
+                    corner: corner?,
+                    size: size?,
                 });
             }
             let centre = centre(reader, section);
+            let size = size?;
             Some(Figure::Rectangle {
-                centre: centre?,
-                size: size?,
+                corner: centre? - size * 0.5,
+                size,
             })
         }
         "polygon" => Some(Figure::Polygon {
