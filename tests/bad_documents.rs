@@ -345,11 +345,77 @@ const TABLE: &[(&str, &str, &str, &[&str])] = &[
         "128",
         &["between 0", "0.5"],
     ),
+    (
+        "[[outline]]\nadd = \"polygon\"\npoints = [[0, 0], [4, 4], [4, 0], [0, 4]]\n",
+        "5:7",
+        "\"polygon\"",
+        &["step 1 (polygon)", "crosses", "in order"],
+    ),
+    (
+        "[[outline]]\nadd = \"polygon\"\npoints = [[0, 0], [4, 4], [8, 8]]\n",
+        "5:7",
+        "\"polygon\"",
+        &["step 1 (polygon)"],
+    ),
+    (
+        "[[outline]]\nadd = \"polygon\"\npoints = [[0, 0], [0, 0], [8, 8], [3, 0]]\n",
+        "5:7",
+        "\"polygon\"",
+        &["points 1 and 2", "once"],
+    ),
+    (
+        "[[outline]]\nadd = \"disc\"\nradius = 4\n[[outline]]\ncut = \"disc\"\nradius = 5\n",
+        "8:7",
+        "\"disc\"",
+        &["step 2 (disc)", "leaves nothing", "remove the step"],
+    ),
+    (
+        "[[outline]]\nadd = \"disc\"\nradius = 4\n[[outline]]\nkeep = \"disc\"\nradius = 5\ncentre = [50, 0]\n",
+        "8:8",
+        "\"disc\"",
+        &["step 2 (disc)", "leaves nothing"],
+    ),
+    (
+        "[[outline]]\nadd = \"disc\"\nradius = 4\n[finish]\ngrow = -5\n",
+        "8:8",
+        "-5",
+        &["growing"],
+    ),
+    (
+        "[[outline]]\nadd = \"rectangle\"\nsize = [10, 4]\n[finish]\nround = 3\n",
+        "8:9",
+        "3",
+        &["rounding", "no room", "smaller radius"],
+    ),
+    (
+        "[[outline]]\nadd = \"picture\"\nfile = \"nowhere.png\"\npixel = 1\n",
+        "5:7",
+        "\"picture\"",
+        &["nowhere.png", "no such file", "relative to the folder"],
+    ),
+    (
+        "[[outline]]\nadd = \"points\"\nfile = \"micrograph.png\"\n",
+        "5:7",
+        "\"points\"",
+        &["micrograph.png", "UTF-8"],
+    ),
+    (
+        "[[outline]]\nadd = \"picture\"\nfile = \"traced-edge.csv\"\npixel = 1\n",
+        "5:7",
+        "\"picture\"",
+        &["traced-edge.csv", "no readable PNG"],
+    ),
+    (
+        "[[outline]]\nadd = \"picture\"\nfile = \".\"\npixel = 1\n",
+        "5:7",
+        "\"picture\"",
+        &["step 1 (picture)"],
+    ),
 ];
 
 /// Whole documents.
 const WHOLE: &[(&str, &str, &str, &[&str])] = &[
-    ("\u{0}\u{1}\u{2}", "1:1", "", &["not TOML"]),
+    ("\u{0}\u{1}\u{2}", "1:", "", &["not TOML"]),
     (
         "scale = \"nano\"\n",
         "1:9",

@@ -96,6 +96,7 @@ fn read(path: &Path, text: &str) -> Result<Vec<Vec<Vertex>>, IntakeError> {
                 ));
             }
             [Some(_)] => return Err(refuse("one number; a point needs two: \"x, y\"".to_owned())),
+            [] => return Err(refuse("no number; a point is \"x, y\"".to_owned())),
             [None, ..] if header && numbers.iter().all(Option::is_none) => {}
             _ => {
                 let bad = fields[numbers.iter().position(Option::is_none).unwrap_or(0)];
