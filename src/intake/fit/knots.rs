@@ -56,6 +56,7 @@ pub(super) fn place(samples: &Samples, corners: &[Corner], trace: &Trace) -> Vec
                 .map(Mark::Run),
         );
     }
+    drop_flats(&mut marks, samples, trace);
     if marks.is_empty() {
         return smooth(samples, trace);
     }
@@ -83,6 +84,31 @@ pub(super) fn place(samples: &Samples, corners: &[Corner], trace: &Trace) -> Vec
         }
     }
     knots
+}
+
+/// Drops short runs that meet neither a corner nor another run: where a curve is merely flat, a
+/// line between two curves would add two jumps of curvature and gain nothing.
+fn drop_flats(marks: &mut Vec<Mark>, samples: &Samples, trace: &Trace) {
+    let n = samples.len() as i64;
+    let least = 3 * samples.count(trace.run);
+    let ends = |mark: &Mark| match mark {
+        Mark::Corner(c) => (c.sample, c.sample),
+        Mark::Run(r) => (r.first, r.last),
+    };
+    let near = |a: i64, b: i64| (b - a).rem_euclid(n) <= 2 * reach(samples, trace);
+    let count = marks.len();
+    let keep: Vec<bool> = (0..count)
+        .map(|k| match &marks[k] {
+            Mark::Run(run) if run.last - run.first < least => {
+                let (_, before) = ends(&marks[(k + count - 1) % count]);
+                let (after, _) = ends(&marks[(k + 1) % count]);
+                count > 1 && (near(before, run.first) || near(run.last, after))
+            }
+            _ => true,
+        })
+        .collect();
+    let mut keep = keep.into_iter();
+    marks.retain(|_| keep.next().unwrap_or(true));
 }
 
 /// The line of a run that reaches up to a corner on its side (−1 before, 1 after).
