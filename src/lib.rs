@@ -6,9 +6,11 @@
 
 pub mod eigen;
 pub mod geometry;
+pub mod intake;
 pub mod lattice;
 pub mod modes;
 pub mod operators;
 pub mod progress;
+pub mod shape;
 pub mod spectrum;
 pub mod units;
