@@ -8,10 +8,11 @@ use dotwright::desk::{
 };
 use dotwright::geometry::{Outline, Point};
 use dotwright::progress::{Step, Watch};
-use dotwright::spectrum::{Level, Spectrum, Wanted};
+use dotwright::spectrum::{Level, Spectrum, Wanted, solve};
 use ratatui::Terminal;
 use ratatui::backend::TestBackend;
 use std::cell::RefCell;
+use std::sync::Mutex;
 use std::time::Duration;
 
 fn rectangle(width: f64, height: f64) -> Outline {
@@ -84,9 +85,7 @@ impl Desk {
                     held.push(job);
                     continue;
                 }
-                let said = RefCell::new(Vec::new());
-                perform(job, &Watch::quiet(), &|a| said.borrow_mut().push(a));
-                let said = said.into_inner().into_iter().rev();
+                let said = done(job).into_iter().rev();
                 todo.extend(said.map(with_fixed_figures));
             }
         }
@@ -140,6 +139,40 @@ impl Desk {
             "{name} has changed; now:\n{got}\nbefore:\n{want}"
         );
     }
+}
+
+/// What comes of a job; each outline is solved once for all tests.
+fn done(job: Job) -> Vec<Action> {
+    static SOLVED: Mutex<Vec<(Outline, Spectrum)>> = Mutex::new(Vec::new());
+    let known = || SOLVED.lock().expect("no test fails while it looks here");
+    let said = RefCell::new(Vec::new());
+    if let Job::Solve {
+        generation,
+        document: d,
+        ..
+    } = &job
+    {
+        let hit = known()
+            .iter()
+            .find(|s| s.0 == d.outline)
+            .map(|s| s.1.clone());
+        if let Some(spectrum) = hit {
+            return vec![Action::Solved {
+                generation: *generation,
+                result: Ok(Box::new(spectrum)),
+            }];
+        }
+        let outline = d.outline.clone();
+        perform(job, &Watch::quiet(), &|a| {
+            if let Action::Solved { result: Ok(s), .. } = &a {
+                known().push((outline.clone(), (**s).clone()));
+            }
+            said.borrow_mut().push(a);
+        });
+    } else {
+        perform(job, &Watch::quiet(), &|a| said.borrow_mut().push(a));
+    }
+    said.into_inner()
 }
 
 /// Figures that do not depend on the solver; the modes stay its own.
@@ -377,16 +410,14 @@ fn keys_work_while_the_solver_does() {
     desk.resize(100, 30);
     desk.typed("e");
     assert!(desk.screen().contains("no map yet"));
-    let solve = desk.held.take().expect("jobs were held").remove(0);
-    perform_solve(&mut desk, solve);
+    let job = desk.held.take().expect("jobs were held").remove(0);
+    perform_solve(&mut desk, job);
     assert_eq!(desk.state.count(), 12);
     assert!(desk.screen().contains("none missing"));
 }
 
 fn perform_solve(desk: &mut Desk, job: Job) {
-    let said = RefCell::new(Vec::new());
-    perform(job, &Watch::quiet(), &|a| said.borrow_mut().push(a));
-    for action in said.into_inner() {
+    for action in done(job) {
         desk.act(with_fixed_figures(action));
     }
 }
@@ -428,10 +459,8 @@ fn degenerate_levels_and_open_counts_are_shown() {
     let mut desk = Desk::new(document(rectangle(80., 50.)), MONO, (80, 24));
     desk.held = Some(Vec::new());
     desk.act(Action::Begin);
-    let solve = desk.held.take().expect("jobs were held").remove(0);
-    let said = RefCell::new(Vec::new());
-    perform(solve, &Watch::quiet(), &|a| said.borrow_mut().push(a));
-    for action in said.into_inner() {
+    let job = desk.held.take().expect("jobs were held").remove(0);
+    for action in done(job) {
         let action = match with_fixed_figures(action) {
             Action::Solved { generation, result } => Action::Solved {
                 generation,
@@ -524,4 +553,28 @@ fn the_key_table_names_every_key() {
     for e in ACTIONS {
         assert!(table.contains(e.text));
     }
+}
+
+#[test]
+fn a_map_in_characters_for_a_run_without_terminal() {
+    let d = document(rectangle(80., 50.));
+    let watch = Watch::quiet();
+    let found = solve(&d.outline, d.kinetic, &d.wanted, None, &watch);
+    let found = found.expect("a rectangle has levels");
+    let map = dotwright::desk::print_map(&d, &found, 1, Glyphs::Plain, (40, 14));
+    assert!(map.is_ascii());
+    assert!(
+        map.lines().count() == 14 && map.lines().all(|l| l.len() <= 40),
+        "{map}"
+    );
+    assert!(
+        map.contains('@') && map.contains(" nm") && map.contains("most"),
+        "{map}"
+    );
+    let dots = dotwright::desk::print_map(&d, &found, 1, Glyphs::HalfBlock, (40, 14));
+    assert!(dots.contains('⣿') && !dots.contains('▀'));
+    assert_eq!(
+        dotwright::desk::print_map(&d, &found, 99, Glyphs::Plain, (40, 14)),
+        ""
+    );
 }

@@ -132,7 +132,7 @@ pub const ACTIONS: &[Entry] = &[
     entry!(Nodes, "nodal lines", [Char('n')], "nodes", VIEWS, "show or hide nodal lines"),
     entry!(Open, "open", [Key::Enter], "open", SHEET, "open the marked plate"),
     entry!(Sheet, "sheet", [Char('s')], "sheet", VIEWS, "many small plates at once, and back"),
-    entry!(Temperature, "temperature", [Char('t')], "kT", VIEWS, "set the temperature of the kT bar"),
+    entry!(Temperature, "temperature", [Char('t')], "kT", PLATE, "set the temperature of the kT bar"),
     entry!(Export, "export", [Char('e')], "export", VIEWS, "write the chosen map as a PNG picture"),
     entry!(Glyphs, "characters", [Char('g')], "", VIEWS, "draw with other characters"),
     entry!(Background, "background", [Char('b')], "", VIEWS, "shades for a dark or a light background"),

@@ -66,7 +66,7 @@ pub fn ladder(state: &State, buffer: &mut Buffer, area: Rect) {
         Scale::Lab => "meV",
         Scale::Reduced => "E",
     };
-    let at = (left.saturating_sub(unit.len())).max(0) as u16;
+    let at = left.saturating_sub(unit.len()) as u16;
     buffer.set_string(area.x + at, area.y, unit, state.paint.quiet());
 
     let numbers = if area.width >= 22 { 6 } else { 2 };

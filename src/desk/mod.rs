@@ -31,6 +31,7 @@ mod slip;
 mod state;
 mod update;
 mod view;
+mod wire;
 mod workers;
 
 pub use actions::{ACTIONS, Deed, Entry, Place, key_table};

@@ -5,8 +5,13 @@ use super::capability::{Background, Colours};
 use crate::pictures::Theme;
 use ratatui::style::{Color, Modifier, Style};
 
-/// Steps of a shade; few, so that neighbouring cells share a style and lines stay short.
-pub const SHADES: usize = 16;
+/// Steps of a shade on small plates: few, so that neighbouring cells share a style and a step to
+/// the next mode stays short on a slow line. One cell there spans more than a step anyway.
+const COARSE: usize = 10;
+/// Steps on large plates, where fewer would be seen as terraces.
+const FINE: usize = 20;
+/// Plates of more cells than this are large.
+const LARGE: usize = 1500;
 
 /// The painter's box for one terminal.
 #[derive(Clone, Debug)]
@@ -20,14 +25,15 @@ pub struct Paint {
 type Rgb = [u8; 3];
 
 impl Paint {
-    /// Mixes the shades once.
-    pub fn new(colours: Colours, background: Background) -> Self {
+    /// Mixes the shades for a plate of so many cells.
+    pub fn new(colours: Colours, background: Background, cells: usize) -> Self {
+        let steps = if cells > LARGE { FINE } else { COARSE };
         let light = background == Background::Light;
         let down = |c: Rgb| match colours {
             Colours::True => Color::Rgb(c[0], c[1], c[2]),
             _ => Color::Indexed(nearest(c)),
         };
-        let n = SHADES as i32;
+        let n = steps as i32;
         let part = |i: i32| f64::from(i) / f64::from(n);
         let theme = if light { Theme::Light } else { Theme::Dark };
         let palette = theme.palette();
@@ -51,15 +57,17 @@ impl Paint {
         self.colours >= Colours::Sixteen
     }
 
-    /// The colour of a density step in `0..=SHADES`.
-    pub fn density(&self, step: usize) -> Color {
-        self.density[step.min(SHADES)]
+    /// The colour of a density in 0..=1.
+    pub fn density(&self, tone: f64) -> Color {
+        let last = self.density.len() - 1;
+        self.density[((tone * last as f64).round().max(0.0) as usize).min(last)]
     }
 
-    /// The colour of a wave step in `-SHADES..=SHADES`.
-    pub fn wave(&self, step: i32) -> Color {
-        let n = SHADES as i32;
-        self.wave[(step.clamp(-n, n) + n) as usize]
+    /// The colour of a wave in -1..=1.
+    pub fn wave(&self, tone: f64) -> Color {
+        let last = self.wave.len() - 1;
+        let step = (0.5 * (tone + 1.0) * last as f64).round().max(0.0);
+        self.wave[(step as usize).min(last)]
     }
 
     /// What is chosen.
@@ -114,8 +122,8 @@ impl Paint {
             (Colours::Sixteen, false) => {
                 Style::new().fg(if self.light { Color::Blue } else { Color::Cyan })
             }
-            (_, true) => Style::new().fg(self.wave(SHADES as i32 * 3 / 4)),
-            (_, false) => Style::new().fg(self.wave(-(SHADES as i32) * 3 / 4)),
+            (_, true) => Style::new().fg(self.wave(0.75)),
+            (_, false) => Style::new().fg(self.wave(-0.75)),
         }
     }
 
@@ -138,25 +146,44 @@ impl Paint {
     }
 }
 
-/// The entry of the fixed 256 palette (colour cube and grey ramp) closest to a colour.
+/// The entry of the fixed 256 palette (colour cube and grey ramp) that looks closest to a colour.
 fn nearest(c: Rgb) -> u8 {
     const CUBE: [u8; 6] = [0, 95, 135, 175, 215, 255];
-    let far = |p: Rgb| {
-        let d = |a: u8, b: u8| (f64::from(a) - f64::from(b)).powi(2);
-        // weights near those of the eye's three receptors keep hues from tipping over
-        3.0 * d(p[0], c[0]) + 5.0 * d(p[1], c[1]) + 2.0 * d(p[2], c[2])
-    };
     let cube = (0..216u8).map(|i| {
         let at = |k: u8| CUBE[usize::from(k % 6)];
         (16 + i, [at(i / 36), at(i / 6), at(i)])
     });
-    let grey = (0..24u8).map(|i| {
-        let v = 8 + 10 * i;
-        (232 + i, [v, v, v])
-    });
+    let grey = (0..24u8).map(|i| (232 + i, [8 + 10 * i; 3]));
+    let wanted = oklab(c);
+    let far = |p: Rgb| {
+        let [l, a, b] = oklab(p);
+        // a step in lightness is seen less than a hue that tips over
+        (l - wanted[0]).powi(2) + HUE * ((a - wanted[1]).powi(2) + (b - wanted[2]).powi(2))
+    };
+    const HUE: f64 = 3.0;
     cube.chain(grey)
         .min_by(|a, b| far(a.1).total_cmp(&far(b.1)))
         .map_or(16, |hit| hit.0)
+}
+
+/// Oklab coordinates of an sRGB colour (B. Ottosson, 2020).
+fn oklab(c: Rgb) -> [f64; 3] {
+    let [r, g, b] = c.map(|v| {
+        let v = f64::from(v) / 255.0;
+        if v <= 0.040_45 {
+            v / 12.92
+        } else {
+            ((v + 0.055) / 1.055).powf(2.4)
+        }
+    });
+    let l = (0.412_221_470_8 * r + 0.536_332_536_3 * g + 0.051_445_992_9 * b).cbrt();
+    let m = (0.211_903_498_2 * r + 0.680_699_545_1 * g + 0.107_396_956_6 * b).cbrt();
+    let s = (0.088_302_461_9 * r + 0.281_718_837_6 * g + 0.629_978_700_5 * b).cbrt();
+    [
+        0.210_454_255_3 * l + 0.793_617_785_0 * m - 0.004_072_046_8 * s,
+        1.977_998_495_1 * l - 2.428_592_205_0 * m + 0.450_593_709_9 * s,
+        0.025_904_037_1 * l + 0.782_771_766_2 * m - 0.808_675_766_0 * s,
+    ]
 }
 
 #[cfg(test)]
@@ -167,14 +194,20 @@ mod tests {
     fn shades_stay_apart_in_every_depth() {
         for colours in [Colours::Palette, Colours::True] {
             for background in [Background::Dark, Background::Light] {
-                let paint = Paint::new(colours, background);
+                let paint = Paint::new(colours, background, 0);
+                let step = 1.0 / COARSE as f64;
                 // the palette has few dark greens and blues; every other step must still differ
-                for i in 0..SHADES - 1 {
-                    assert_ne!(paint.density(i), paint.density(i + 2), "{colours:?} {i}");
+                for i in 0..COARSE - 1 {
+                    let t = i as f64 * step;
+                    assert_ne!(
+                        paint.density(t),
+                        paint.density(t + 2.0 * step),
+                        "{colours:?} {i}"
+                    );
                 }
-                let n = SHADES as i32;
-                for i in 4..=n {
-                    assert_ne!(paint.wave(i), paint.wave(-i), "signs differ");
+                for i in 4..=COARSE {
+                    let t = i as f64 * step;
+                    assert_ne!(paint.wave(t), paint.wave(-t), "signs differ");
                 }
             }
         }

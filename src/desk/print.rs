@@ -32,7 +32,7 @@ pub fn print_map(
     if mode >= spectrum.modes.len() {
         return String::new();
     }
-    let paint = Paint::new(Colours::None, Background::Dark);
+    let paint = Paint::new(Colours::None, Background::Dark, 0);
     let look = Look {
         glyphs: match glyphs {
             Glyphs::Plain => Glyphs::Plain,

@@ -1,41 +1,24 @@
-//! Frames to the terminal: gathered in memory, written at once, as one synchronised update.
+//! Frames to the terminal: what changed, written at once, as one synchronised update.
 
-use ratatui::crossterm::queue;
-use ratatui::crossterm::terminal::{BeginSynchronizedUpdate, EndSynchronizedUpdate};
-use ratatui::prelude::{CrosstermBackend, Frame, Terminal};
-use std::cell::RefCell;
+use super::wire::Wire;
+use ratatui::{Frame, Terminal};
 use std::io::{Result, Stdout, Write, stdout};
-use std::rc::Rc;
+
+/// Begin and end of a synchronised update (private mode 2026); terminals that do not know it let
+/// it pass.
+const TOGETHER: (&str, &str) = ("\x1b[?2026h", "\x1b[?2026l");
 
 /// The terminal as the desk draws on it.
 pub struct Screen {
-    terminal: Terminal<CrosstermBackend<Gather>>,
-    gathered: Rc<RefCell<Vec<u8>>>,
+    terminal: Terminal<Wire>,
     out: Stdout,
-}
-
-/// Keeps bytes; a flush of the drawing library is no reason yet to write.
-struct Gather(Rc<RefCell<Vec<u8>>>);
-
-impl Write for Gather {
-    fn write(&mut self, bytes: &[u8]) -> Result<usize> {
-        self.0.borrow_mut().extend_from_slice(bytes);
-        Ok(bytes.len())
-    }
-
-    fn flush(&mut self) -> Result<()> {
-        Ok(())
-    }
 }
 
 impl Screen {
     /// The whole terminal.
     pub fn open() -> Result<Self> {
-        let gathered = Rc::new(RefCell::new(Vec::with_capacity(1 << 16)));
-        let terminal = Terminal::new(CrosstermBackend::new(Gather(gathered.clone())))?;
         Ok(Self {
-            terminal,
-            gathered,
+            terminal: Terminal::new(Wire::default())?,
             out: stdout(),
         })
     }
@@ -51,19 +34,16 @@ impl Screen {
         self.terminal.clear()
     }
 
-    /// Draws a frame: what changed goes out in one write.
+    /// Draws a frame and sends it.
     pub fn draw(&mut self, paint: impl FnOnce(&mut Frame<'_>)) -> Result<()> {
-        queue!(Gather(self.gathered.clone()), BeginSynchronizedUpdate)?;
-        let empty = self.gathered.borrow().len();
         self.terminal.draw(paint)?;
-        let mut bytes = self.gathered.borrow_mut();
-        // a frame without change still asks for a hidden cursor; that is not worth a line
-        if bytes.len() > empty + b"\x1b[?25l".len() {
-            queue!(bytes, EndSynchronizedUpdate)?;
-            self.out.write_all(&bytes)?;
+        let text = std::mem::take(&mut self.terminal.backend_mut().text);
+        if !text.is_empty() {
+            let (begin, end) = TOGETHER;
+            self.out
+                .write_all([begin, &text, end].concat().as_bytes())?;
             self.out.flush()?;
         }
-        bytes.clear();
         Ok(())
     }
 }

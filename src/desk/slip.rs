@@ -155,7 +155,7 @@ impl Slip<'_> {
         let write = |f: &dyn Fn(&Portrait) -> String| portrait.map_or(String::new(), f);
         // what is below a ten-thousandth of the shape is sampling, not place
         let steady = |x: f64| if x.abs() < 1e-4 * size { 0.0 } else { x };
-        let decimals = (2.0 - size.log10().floor()).clamp(0.0, 8.0) as usize;
+        let decimals = (3.0 - size.log10()).round().clamp(0.0, 8.0) as usize;
         let centre = write(&|p| {
             let (x, y) = (steady(p.centroid.x), steady(p.centroid.y));
             format!("{x:.decimals$}, {y:.decimals$}{unit}")

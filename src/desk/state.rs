@@ -176,7 +176,7 @@ impl State {
             document: Arc::new(document),
             glyphs: capability.glyphs,
             background: capability.background,
-            paint: Paint::new(capability.colours, capability.background),
+            paint: Paint::new(capability.colours, capability.background, 0),
             capability,
             show: Show::Density,
             nodes: false,
@@ -263,6 +263,12 @@ impl State {
     /// Whether something runs that a gauge may have to show.
     pub fn busy(&self) -> bool {
         self.solving.running.is_some() || self.exporting.is_some()
+    }
+
+    /// Mixes the shades anew, after a change of background or of size.
+    pub fn repaint(&mut self) {
+        let cells = self.layout().map_or(0, |l| l.plate.area() as usize);
+        self.paint = Paint::new(self.capability.colours, self.background, cells);
     }
 
     /// Lays the outline on a block of cells.

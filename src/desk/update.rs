@@ -5,7 +5,6 @@ use super::capability::Background;
 use super::document::Scale;
 use super::jobs::{Action, Job};
 use super::keys::Key;
-use super::paint::Paint;
 use super::state::{Message, Mount, Overlay, Picture, Question, Running, Show, State, View};
 use std::sync::Arc;
 
@@ -24,6 +23,7 @@ pub fn update(state: &mut State, action: Action) -> Vec<Job> {
         } => {
             state.size = (columns, rows);
             state.aspect = aspect.clamp(1.0, 4.0);
+            state.repaint();
             remount(state);
             wanted_pictures(state)
         }
@@ -229,13 +229,14 @@ fn press(state: &mut State, key: Key) -> Vec<Job> {
         return perform(state, deed);
     }
     match (&mut state.overlay, key) {
-        (Some(Overlay::Question(_, text)), Key::Char(c)) => {
-            if text.len() < 24 && c.is_ascii_graphic() {
-                text.push(c);
-            }
+        (Some(Overlay::Question(_, text)), Key::Char(c))
+            if text.len() < 24 && c.is_ascii_graphic() =>
+        {
+            text.push(c);
         }
         (Some(Overlay::Question(_, text)), Key::Backspace) => {
-            if text.pop().is_none() {
+            let was_empty = text.pop().is_none();
+            if was_empty {
                 state.overlay = None;
             }
         }
@@ -300,7 +301,7 @@ fn perform(state: &mut State, deed: Deed) -> Vec<Job> {
                 Background::Dark => Background::Light,
                 Background::Light => Background::Dark,
             };
-            state.paint = Paint::new(state.capability.colours, state.background);
+            state.repaint();
             Vec::new()
         }
         Deed::Redraw => vec![Job::Redraw],

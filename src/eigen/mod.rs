@@ -1,139 +1,131 @@
-//! stand-in: dense
-use crate::progress::{Cancelled, Watch};
-use faer::{Mat, Side, prelude::*};
+//! The lowest levels of K x = λ M x, and the proof that none is missing.
+//!
+//! Enters: sparse K and M on one pattern, coordinates of the unknowns, a window. Leaves: levels,
+//! vectors, residuals and a count by inertia. This room does not know what they mean.
+
+mod blocks;
+mod dense;
+mod factor;
+mod lanczos;
+mod matvec;
+mod order;
+mod slices;
+
+pub use blocks::{combine, project, symmetric_eigen};
+pub use factor::{Factor, Plan};
+pub use slices::solve;
+
+use crate::progress::Cancelled;
 use sprs::CsMat;
-#[derive(Debug, thiserror::Error)]
+
+/// A scalar the solver works with: a real or complex double.
+pub trait Number: crate::units::Scalar + faer::traits::ComplexField {}
+impl Number for f64 {}
+impl Number for num_complex::Complex64 {}
+
+/// Why there are no levels.
+#[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum EigenError {
+    /// Called off.
     #[error(transparent)]
     Cancelled(#[from] Cancelled),
-    #[error("{0}")]
+    /// Shapes, patterns or numbers that cannot be.
+    #[error("the eigenvalue problem is not well posed: {0}")]
+    IllPosed(String),
+    /// More levels than the problem has.
+    #[error("{asked} levels were asked of a problem with {unknowns} unknowns")]
+    TooMany {
+        /// Levels asked for.
+        asked: usize,
+        /// Unknowns.
+        unknowns: usize,
+    },
+    /// The factor would not fit.
+    #[error(
+        "the factor of {unknowns} unknowns needs {gigabytes:.1} GB, more than the limit of {limit:.1} GB"
+    )]
+    TooLarge {
+        /// Unknowns.
+        unknowns: usize,
+        /// Size of the factor.
+        gigabytes: f64,
+        /// The limit.
+        limit: f64,
+    },
+    /// The machine's fault.
+    #[error("the eigensolver failed: {0}")]
     Failed(String),
 }
-pub struct Problem<'a> {
-    pub stiffness: &'a CsMat<f64>,
-    pub mass: &'a CsMat<f64>,
+
+/// K x = λ M x; both Hermitian with all entries stored, rows ascending, on one pattern.
+#[derive(Clone, Copy, Debug)]
+pub struct Problem<'a, T> {
+    /// K.
+    pub stiffness: &'a CsMat<T>,
+    /// M, positive definite.
+    pub mass: &'a CsMat<T>,
+    /// Coordinates of each unknown, for the elimination order.
     pub places: &'a [[f64; 2]],
+    /// This many unknowns at the end couple with all others and are eliminated last.
     pub tail: usize,
 }
-#[derive(Clone, Copy, Debug)]
+
+/// Which levels.
+#[derive(Clone, Copy, Debug, PartialEq)]
 pub enum Window {
+    /// The lowest ones.
     Lowest(usize),
-    From { value: f64, count: usize },
+    /// The first `count` from a value upwards.
+    From {
+        /// The value.
+        value: f64,
+        /// How many.
+        count: usize,
+    },
 }
-pub struct Settings<'a> {
+
+/// How to solve.
+#[derive(Clone, Copy, Debug)]
+pub struct Settings<'a, T> {
+    /// Which levels.
     pub window: Window,
+    /// Relative residual to reach.
     pub tolerance: f64,
-    pub start: Option<&'a [Vec<f64>]>,
+    /// Vectors to start from: modes of a similar problem.
+    pub start: Option<&'a [Vec<T>]>,
+    /// Expected value of the last level wanted.
     pub guess: Option<f64>,
+    /// Largest factor, in bytes.
+    pub memory: f64,
 }
-pub struct Found {
+
+/// Levels and their proof.
+#[derive(Clone, Debug, Default)]
+pub struct Found<T> {
+    /// Ascending.
     pub values: Vec<f64>,
-    pub vectors: Vec<Vec<f64>>,
+    /// M-normalised.
+    pub vectors: Vec<Vec<T>>,
+    /// Relative residuals.
     pub residuals: Vec<f64>,
+    /// Number of the first level, counted from the bottom, from 1.
     pub first_index: usize,
+    /// Where was counted.
     pub shift: f64,
+    /// Levels below the shift, by inertia.
     pub below: usize,
+    /// Levels below the shift that are known.
     pub found: usize,
+    /// Whether both agree.
     pub complete: bool,
+    /// Values found beyond the window.
     pub beyond: Vec<f64>,
+    /// Right-hand sides solved.
+    pub solves: usize,
+    /// Factorisations.
+    pub factorisations: usize,
+    /// Milliseconds in factorisations.
     pub factor_ms: f64,
+    /// Milliseconds in the rest.
     pub solve_ms: f64,
-}
-fn dense(a: &CsMat<f64>) -> Mat<f64> {
-    let mut m = Mat::zeros(a.rows(), a.cols());
-    for (v, (i, j)) in a.iter() {
-        m[(i, j)] = *v;
-    }
-    m
-}
-pub fn symmetric_eigen(a: &[f64], n: usize) -> Result<(Vec<f64>, Vec<f64>), EigenError> {
-    let m = Mat::from_fn(n, n, |i, j| a[i * n + j]);
-    let e = m
-        .self_adjoint_eigen(Side::Lower)
-        .map_err(|_| EigenError::Failed("dense".into()))?;
-    let v = e.S().column_vector().iter().copied().collect();
-    let mut u = vec![0.0; n * n];
-    for k in 0..n {
-        for i in 0..n {
-            u[k * n + i] = e.U()[(i, k)];
-        }
-    }
-    Ok((v, u))
-}
-pub struct Factor {
-    l: faer::linalg::solvers::Llt<f64>,
-}
-impl Factor {
-    pub fn new(a: &CsMat<f64>, _places: &[[f64; 2]]) -> Result<Self, EigenError> {
-        Ok(Self {
-            l: dense(a)
-                .llt(Side::Lower)
-                .map_err(|_| EigenError::Failed("not positive".into()))?,
-        })
-    }
-    pub fn solve(&self, b: &mut [Vec<f64>]) {
-        let n = b[0].len();
-        let m = Mat::from_fn(n, b.len(), |i, j| b[j][i]);
-        let x = self.l.solve(&m);
-        for (j, b) in b.iter_mut().enumerate() {
-            for (i, b) in b.iter_mut().enumerate() {
-                *b = x[(i, j)];
-            }
-        }
-    }
-}
-pub fn solve(p: &Problem<'_>, s: &Settings<'_>, _w: &Watch) -> Result<Found, EigenError> {
-    let count = match s.window {
-        Window::Lowest(n) => n,
-        Window::From { count, .. } => count,
-    };
-    let (k, mut a) = (dense(p.stiffness), dense(p.mass));
-    let l = k
-        .llt(Side::Lower)
-        .map_err(|_| EigenError::Failed("not positive".into()))?;
-    let l = l.L().to_owned();
-    faer::linalg::triangular_solve::solve_lower_triangular_in_place(
-        l.as_ref(),
-        a.as_mut(),
-        faer::Par::Seq,
-    );
-    let mut a = a.transpose().to_owned();
-    faer::linalg::triangular_solve::solve_lower_triangular_in_place(
-        l.as_ref(),
-        a.as_mut(),
-        faer::Par::Seq,
-    );
-    let e = a
-        .self_adjoint_eigen(Side::Lower)
-        .map_err(|_| EigenError::Failed("dense".into()))?;
-    let n = l.nrows();
-    let mut f = Found {
-        values: vec![],
-        vectors: vec![],
-        residuals: vec![0.0; count],
-        first_index: 1,
-        shift: 0.0,
-        below: count,
-        found: count,
-        complete: true,
-        beyond: vec![],
-        factor_ms: 0.0,
-        solve_ms: 0.0,
-    };
-    for c in 0..(count + 1).min(n) {
-        let mu = e.S().column_vector()[n - 1 - c];
-        if c == count {
-            f.beyond.push(1.0 / mu);
-            break;
-        }
-        f.values.push(1.0 / mu);
-        let mut x = Mat::from_fn(n, 1, |i, _| e.U()[(i, n - 1 - c)] / mu.sqrt());
-        faer::linalg::triangular_solve::solve_upper_triangular_in_place(
-            l.transpose(),
-            x.as_mut(),
-            faer::Par::Seq,
-        );
-        f.vectors.push((0..n).map(|i| x[(i, 0)]).collect());
-    }
-    Ok(f)
 }

@@ -18,7 +18,7 @@ pub struct Attempt {
     /// Corner functions used.
     pub corners: Vec<CornerSpace>,
     /// From the eigensolver.
-    pub found: Found,
+    pub found: Found<f64>,
     /// The modes, ∫u² = 1.
     pub functions: Functions,
     /// Residuals.
@@ -33,6 +33,8 @@ pub struct Attempt {
 
 /// Above this the quadrature of the corner functions is not to be trusted.
 pub const ASYMMETRY: f64 = 1e-8;
+/// Largest factor, bytes.
+const MEMORY: f64 = 12e9;
 /// Relative residual the eigensolver stops at; the level's error is of its square.
 const TOLERANCE: f64 = 1e-7;
 
@@ -42,6 +44,7 @@ impl Attempt {
         outline: &Outline,
         plan: Plan,
         window: Window,
+        guess: f64,
         timings: &mut Timings,
         watch: &Watch,
     ) -> Result<Self, SpectrumError> {
@@ -54,16 +57,22 @@ impl Attempt {
         let places = lattice.places();
         timings.operators += ms(clock);
         let clock = Instant::now();
-        let tail = Tail::new(&pair, &border, |b| {
+        let tail = if border.is_empty() {
+            Tail::default()
+        } else {
             let k = sprs::CsMat::new(
                 (pair.len(), pair.len()),
                 pair.starts.clone(),
                 pair.columns.clone(),
                 pair.stiffness.clone(),
             );
-            Factor::new(&k, &places)?.solve(b);
-            Ok(())
-        })?;
+            let plan = eigen::Plan::new(&k, &places, 0, MEMORY)?;
+            let mut factor = Factor::new(&plan, &k, None)?;
+            Tail::new(&pair, &border, |b, count| {
+                factor.solve(b, count);
+                Ok(())
+            })?
+        };
         timings.factor += ms(clock);
         let clock = Instant::now();
         let system = System::new(pair, &tail, places);
@@ -78,7 +87,8 @@ impl Attempt {
             window,
             tolerance: TOLERANCE,
             start: None,
-            guess: None,
+            guess: Some(guess),
+            memory: MEMORY,
         };
         let found = eigen::solve(&problem, &settings, watch)?;
         timings.factor += found.factor_ms;

@@ -1,16 +1,16 @@
 //! From residuals to values with an error bar, and to groups of levels that coincide.
 
 /// The reported value is λ − SHIFT·η²: computed levels lie above the true ones.
-pub const SHIFT: f64 = 0.04;
+pub const SHIFT: f64 = 0.035;
 /// The error bar is SPREAD·η² around the reported value.
-pub const SPREAD: f64 = 0.06;
+pub const SPREAD: f64 = 0.055;
 /// Relative floor of the bar: rounding in assembly and factorisation.
 pub const FLOOR: f64 = 2e-11;
 
 /// Value and error of a level from its computed value, η² and relative algebraic residual.
 pub fn bar(lambda: f64, eta2: f64, residual: f64) -> (f64, f64) {
-    // the algebraic error is of second order in the residual away from clusters, first within
-    let floor = (FLOOR + residual.abs()) * lambda.abs();
+    // the algebraic error is of second order in the residual; 100: a gap of a hundredth
+    let floor = (FLOOR + 100.0 * residual * residual) * lambda.abs();
     (lambda - SHIFT * eta2, SPREAD * eta2 + floor)
 }
 

@@ -89,7 +89,7 @@ pub fn solve(
             )));
         }
         watch.step(round, ATTEMPTS, "lattices")?;
-        let attempt = Attempt::new(outline, plan.clone(), window, &mut timings, watch)?;
+        let attempt = Attempt::new(outline, plan.clone(), window, top, &mut timings, watch)?;
         let step = next(&attempt, wanted.accuracy);
         if std::env::var_os("DW_TRACE").is_some() {
             eprintln!(

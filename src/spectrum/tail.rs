@@ -3,7 +3,7 @@
 //! With X = K⁻¹k: S′ = S − kᵀX, scaled to unit diagonal, directions below a threshold dropped.
 //! Raw functions raise the condition number from 1e5 to 1e11 and cost digits.
 
-use crate::eigen::{EigenError, symmetric_eigen};
+use crate::eigen::{EigenError, combine, project, symmetric_eigen};
 use crate::operators::{Border, Pair};
 
 /// Directions of the scaled S′ with eigenvalues below this are within rounding of the splines.
@@ -28,14 +28,15 @@ impl Tail {
         self.mass.len()
     }
 
-    /// Orthogonalises; `solve` overwrites right-hand sides with K⁻¹ of them.
+    /// Orthogonalises; `solve` overwrites that many right-hand
+    /// sides, one after the other, with K⁻¹ of them.
     ///
     /// # Errors
     /// What `solve` and the small eigenproblem report.
     pub fn new(
         pair: &Pair,
         border: &Border,
-        mut solve: impl FnMut(&mut [Vec<f64>]) -> Result<(), EigenError>,
+        mut solve: impl FnMut(&mut [f64], usize) -> Result<(), EigenError>,
     ) -> Result<Self, EigenError> {
         let q = border.len();
         if q == 0 {
@@ -45,100 +46,87 @@ impl Tail {
         let d: Vec<f64> = (0..q)
             .map(|i| 1.0 / border.own_stiffness[i * q + i].abs().sqrt().max(1e-300))
             .collect();
-        let scaled = |v: &[Vec<f64>]| -> Vec<Vec<f64>> {
+        let scaled = |v: &[Vec<f64>]| -> Vec<f64> {
             v.iter()
                 .zip(&d)
-                .map(|(v, d)| v.iter().map(|x| x * d).collect())
+                .flat_map(|(v, d)| v.iter().map(move |x| x * d))
                 .collect()
         };
         let (k, m) = (scaled(&border.stiffness), scaled(&border.mass));
         let mut x = k.clone();
-        solve(&mut x)?;
+        solve(&mut x, q)?;
         // one step of refinement: X is subtracted from numbers it nearly equals
-        let mut r: Vec<Vec<f64>> = Vec::with_capacity(q);
-        for (x, k) in x.iter().zip(&k) {
-            let kx = times(pair, &pair.stiffness, x);
-            r.push(k.iter().zip(&kx).map(|(a, b)| a - b).collect());
+        let mut r = k.clone();
+        for (r, x) in r.chunks_exact_mut(n).zip(x.chunks_exact(n)) {
+            subtract(pair, &pair.stiffness, x, r);
         }
-        solve(&mut r)?;
+        solve(&mut r, q)?;
         for (x, r) in x.iter_mut().zip(&r) {
-            for (x, r) in x.iter_mut().zip(r) {
-                *x += r;
-            }
+            *x += r;
         }
-        let mut s = vec![0.0; q * q];
-        for i in 0..q {
-            for j in 0..q {
-                let a = border.own_stiffness[i * q + j] * d[i] * d[j] - dot(&k[i], &x[j]);
-                s[i * q + j] += 0.5 * a;
-                s[j * q + i] += 0.5 * a;
-            }
-        }
+        let kx = project(&k, q, &x, q, n);
+        let s: Vec<f64> = (0..q * q)
+            .map(|e| {
+                let (i, j) = (e % q, e / q);
+                border.own_stiffness[e] * d[i] * d[j] - 0.5 * (kx[j * q + i] + kx[i * q + j])
+            })
+            .collect();
         let (values, vectors) = symmetric_eigen(&s, q)?;
         let keep: Vec<usize> = (0..q).filter(|&i| values[i] > DROP).collect();
         let w = keep.len();
-        // T: raw (scaled) function i in kept direction f
-        let t = |i: usize, f: usize| vectors[keep[f] * q + i] / values[keep[f]].sqrt();
-        let mx: Vec<Vec<f64>> = x.iter().map(|x| times(pair, &pair.mass, x)).collect();
-        let combine = |v: &dyn Fn(usize, usize) -> f64| -> Vec<Vec<f64>> {
-            (0..w)
-                .map(|f| {
-                    let mut out = vec![0.0; n];
-                    for i in 0..q {
-                        let c = t(i, f);
-                        for (u, o) in out.iter_mut().enumerate() {
-                            *o += c * v(i, u);
-                        }
-                    }
-                    out
-                })
-                .collect()
+        // T: kept direction f in terms of the scaled raw functions
+        let mut t = Vec::with_capacity(q * w);
+        for &f in &keep {
+            let c = 1.0 / values[f].sqrt();
+            t.extend(vectors[f * q..(f + 1) * q].iter().map(|v| c * v));
+        }
+        // m − MX, and Xᵀ of it and of m
+        let mut rest = m.clone();
+        for (r, x) in rest.chunks_exact_mut(n).zip(x.chunks_exact(n)) {
+            subtract(pair, &pair.mass, x, r);
+        }
+        let (xr, xm) = (project(&x, q, &rest, q, n), project(&x, q, &m, q, n));
+        // own mass: MS − Xᵀm − mᵀX + XᵀMX = MS − Xᵀ(m − MX) − (Xᵀm)ᵀ
+        let g: Vec<f64> = (0..q * q)
+            .map(|e| {
+                let (i, j) = (e % q, e / q);
+                border.own_mass[e] * d[i] * d[j]
+                    - 0.5 * (xr[j * q + i] + xr[i * q + j])
+                    - 0.5 * (xm[j * q + i] + xm[i * q + j])
+            })
+            .collect();
+        let times = |a: &[f64], rows: usize| {
+            let mut out = vec![0.0; rows * w];
+            combine(&mut out, w, a, q, &t, rows, 1.0);
+            out
         };
-        let mass = combine(&|i, u| m[i][u] - mx[i][u]);
-        let splines = combine(&|i, u| x[i][u]);
-        let mut g = vec![0.0; q * q];
-        for i in 0..q {
-            for j in 0..q {
-                g[i * q + j] = border.own_mass[i * q + j] * d[i] * d[j]
-                    - dot(&x[i], &m[j])
-                    - dot(&m[i], &x[j])
-                    + dot(&x[i], &mx[j]);
-            }
-        }
-        let mut own_mass = vec![0.0; w * w];
-        for a in 0..w {
-            let ga: Vec<f64> = (0..q)
-                .map(|j| (0..q).map(|i| t(i, a) * g[i * q + j]).sum())
-                .collect();
-            for b in 0..w {
-                let v: f64 = (0..q).map(|j| ga[j] * t(j, b)).sum();
-                own_mass[a * w + b] += 0.5 * v;
-                own_mass[b * w + a] += 0.5 * v;
-            }
-        }
-        let raw = (0..q * w).map(|k| d[k / w] * t(k / w, k % w)).collect();
+        let (mass, splines, gt) = (times(&rest, n), times(&x, n), times(&g, q));
+        let own = project(&t, w, &gt, w, q);
+        let own_mass = (0..w * w)
+            .map(|e| 0.5 * (own[e] + own[(e % w) * w + e / w]))
+            .collect();
+        let raw = (0..q * w)
+            .map(|e| d[e / w] * t[(e % w) * q + e / w])
+            .collect();
+        let split = |v: Vec<f64>| v.chunks_exact(n).map(<[f64]>::to_vec).collect();
         Ok(Self {
-            mass,
+            mass: split(mass),
             own_mass,
-            splines,
+            splines: split(splines),
             raw,
         })
     }
 }
 
-fn dot(a: &[f64], b: &[f64]) -> f64 {
-    a.iter().zip(b).map(|(x, y)| x * y).sum()
-}
-
-fn times(pair: &Pair, values: &[f64], x: &[f64]) -> Vec<f64> {
-    (0..pair.len())
-        .map(|i| {
-            let e = pair.starts[i]..pair.starts[i + 1];
-            dot_sparse(&values[e.clone()], &pair.columns[e], x)
-        })
-        .collect()
-}
-
-fn dot_sparse(values: &[f64], columns: &[usize], x: &[f64]) -> f64 {
-    values.iter().zip(columns).map(|(v, &c)| v * x[c]).sum()
+/// r ← r − A x, A on the pair's pattern.
+fn subtract(pair: &Pair, values: &[f64], x: &[f64], r: &mut [f64]) {
+    for (i, r) in r.iter_mut().enumerate() {
+        let e = pair.starts[i]..pair.starts[i + 1];
+        let ax: f64 = values[e.clone()]
+            .iter()
+            .zip(&pair.columns[e])
+            .map(|(v, &c)| v * x[c])
+            .sum();
+        *r -= ax;
+    }
 }

@@ -4,7 +4,7 @@ use super::exposure::Exposure;
 use super::sight::Sight;
 use super::strokes::{Strokes, bit, braille};
 use crate::desk::capability::Glyphs;
-use crate::desk::paint::{Paint, SHADES};
+use crate::desk::paint::Paint;
 use crate::desk::state::Show;
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
@@ -25,6 +25,9 @@ pub struct Look<'a> {
 pub const RAMP: [char; 10] = [' ', '.', ':', '-', '=', '+', '*', '#', '%', '@'];
 /// Round letters from light to heavy, for the negative lobes.
 pub const ROUND: [char; 10] = [' ', '.', ',', 'c', 'o', 'e', 'O', 'Q', '0', '8'];
+
+/// Dots of a coloured density are never darker than this, or they would be lost.
+pub const FAINTEST: f64 = 0.35;
 
 /// Rows in the order in which negative lobes fill them: they look ruled, not dotted.
 const RULED: [f64; 4] = [0.0, 0.5, 0.25, 0.75];
@@ -162,10 +165,9 @@ impl Cell<'_> {
     }
 
     fn colour(&self, tone: f64, look: &Look) -> Color {
-        let steps = SHADES as f64;
         match self.show {
-            Show::Density => look.paint.density((tone * steps).round() as usize),
-            Show::Wave => look.paint.wave((tone * steps).round() as i32),
+            Show::Density => look.paint.density(tone),
+            Show::Wave => look.paint.wave(tone),
         }
     }
 
@@ -173,7 +175,7 @@ impl Cell<'_> {
     /// that no shade shows beyond the line.
     fn body(&self, look: &Look) -> Option<Color> {
         let (tone, share) = self.mean(0..4)?;
-        (look.glyphs == Glyphs::HalfBlock && share > 0.7).then(|| self.colour(tone, look))
+        (look.glyphs == Glyphs::HalfBlock && share > 0.8).then(|| self.colour(tone, look))
     }
 
     fn halves(&self, look: &Look) -> Drawn {
@@ -202,10 +204,7 @@ impl Cell<'_> {
             _ if !look.paint.coloured() => Style::new(),
             Show::Wave => look.paint.lobe(mean > 0.0),
             Show::Density if look.paint.shades() => {
-                let steps = SHADES as f64;
-                let least = SHADES / 3;
-                let step = (mean * steps).round() as usize;
-                Style::new().fg(look.paint.density(step.max(least)))
+                Style::new().fg(look.paint.density(mean.max(FAINTEST)))
             }
             Show::Density => Style::new(),
         };

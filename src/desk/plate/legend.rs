@@ -1,11 +1,10 @@
 //! What shades and lengths mean: the line under the plate.
 
-use super::develop::{Look, RAMP, ROUND, inked};
+use super::develop::{FAINTEST, Look, RAMP, ROUND, inked};
 use super::sight::Sight;
 use super::strokes::{bit, braille};
 use crate::desk::capability::Glyphs;
 use crate::desk::notation::significant;
-use crate::desk::paint::SHADES;
 use crate::desk::round::round_below;
 use crate::desk::state::Show;
 use ratatui::style::Style;
@@ -61,12 +60,11 @@ pub fn legend(cells: usize, look: &Look) -> Vec<Span<'static>> {
 }
 
 fn swatch(tone: f64, k: usize, look: &Look) -> Span<'static> {
-    let steps = SHADES as f64;
     match look.glyphs {
         Glyphs::HalfBlock => {
             let colour = match look.show {
-                Show::Density => look.paint.density((tone * steps).round() as usize),
-                Show::Wave => look.paint.wave((tone * steps).round() as i32),
+                Show::Density => look.paint.density(tone),
+                Show::Wave => look.paint.wave(tone),
             };
             Span::styled(" ", Style::new().bg(colour))
         }
@@ -82,8 +80,7 @@ fn swatch(tone: f64, k: usize, look: &Look) -> Span<'static> {
             let style = match look.show {
                 Show::Wave if look.paint.coloured() => look.paint.lobe(tone > 0.0),
                 Show::Density if look.paint.shades() => {
-                    let step = (tone * steps).round() as usize;
-                    Style::new().fg(look.paint.density(step.max(SHADES / 3)))
+                    Style::new().fg(look.paint.density(tone.max(FAINTEST)))
                 }
                 _ => Style::new(),
             };
