@@ -232,11 +232,9 @@ fn every_kind_of_png_gives_the_same_square() {
         let (_folder, path) = file("mask.png", &bytes);
         let taken = picture(&path, &READING).unwrap_or_else(|e| panic!("{name}: {e}"));
         let b = taken.outline.bounds();
-        assert_eq!(
-            (b.lo.x, b.lo.y, b.hi.x, b.hi.y),
-            (10.0, 10.0, 50.0, 50.0),
-            "{name}"
-        );
+        let off = [b.lo.x - 10.0, b.lo.y - 10.0, b.hi.x - 50.0, b.hi.y - 50.0];
+        // Roundings of the crossing of two lines.
+        assert!(off.iter().all(|d| d.abs() < 1e-12), "{name}: {off:?}");
         assert_eq!(taken.outline.corners(1e-9).len(), 4, "{name}");
     }
     // Dark inside, and the size of a pixel.
@@ -251,7 +249,7 @@ fn every_kind_of_png_gives_the_same_square() {
         .expect("a dark mask")
         .outline
         .bounds();
-    assert_eq!((b.lo.x, b.hi.y), (5.0, 25.0));
+    assert!((b.lo.x - 5.0).abs() < 1e-12 && (b.hi.y - 25.0).abs() < 1e-12);
 }
 
 fn listed(text: &str) -> Result<dotwright::intake::Taken, String> {
@@ -395,7 +393,7 @@ proptest! {
         level in 0.01f64..0.99,
         blocks in 1usize..5,
     ) {
-        let data: Vec<u8> = (0..3600).map(|k| pixels[(k % 60 / blocks) + 20 * (k / 60 / blocks) % 400]).collect();
+        let data: Vec<u8> = (0..3600).map(|k| pixels[(k % 60 / blocks + 23 * (k / 60 / blocks)) % 400]).collect();
         let (_folder, path) = file("x.png", &grey(&data));
         if let Ok(taken) = picture(&path, &Reading { level, ..READING }) {
             for l in &taken.outline.loops {

@@ -278,6 +278,136 @@ fn every_shape_of_the_folder_is_read_and_printed_unchanged() {
 }
 
 #[test]
+fn every_shape_of_the_folder_gives_an_outline_without_remarks() {
+    for path in shapes() {
+        let d = Document::read(&path).unwrap_or_else(|e| panic!("{e}"));
+        let made = d.outline().unwrap_or_else(|e| panic!("{e}"));
+        assert!(
+            made.notes.is_empty(),
+            "{}: {:?}",
+            path.display(),
+            made.notes
+        );
+        assert_eq!(made.outline.components().len(), 1, "{}", path.display());
+        // A second evaluation, with pictures from memory, gives the same.
+        assert_eq!(d.outline().unwrap_or_else(|e| panic!("{e}")), made);
+        let longest = made.outline.bounds().diagonal();
+        assert!(
+            d.scale() == Scale::Reduced || (10.0..500.0).contains(&longest),
+            "{longest} nm"
+        );
+    }
+    assert!(demo().outline().expect("the built-in shape").outline.area() > 5000.0);
+}
+
+/// Box of the outline of one step in a reduced document: left, right, bottom, top.
+fn bounds(step: &str) -> [f64; 4] {
+    let d = parse(&format!("scale = \"reduced\"\n[[outline]]\n{step}\n"));
+    let b = d
+        .outline()
+        .unwrap_or_else(|e| panic!("{e}"))
+        .outline
+        .bounds();
+    [b.lo.x, b.hi.x, b.lo.y, b.hi.y]
+}
+
+#[test]
+fn figures_are_mirrored_then_turned_then_moved_then_repeated() {
+    let plain = "add = \"rectangle\"\ncorner = [1, 2]\nsize = [4, 2]";
+    for (placing, expected) in [
+        ("", [1., 5., 2., 4.]),
+        // Turning is about the middle of the figure unless a point is given.
+        ("turn = 90", [2., 4., 1., 5.]),
+        ("turn = 90\nabout = [0, 0]", [-4., -2., 1., 5.]),
+        ("move = [10, -2]", [11., 15., 0., 2.]),
+        // Mirroring is in a line through the origin, or through the point.
+        ("mirror = \"x\"", [1., 5., -4., -2.]),
+        ("mirror = \"y\"", [-5., -1., 2., 4.]),
+        ("mirror = 45", [2., 4., 1., 5.]),
+        ("mirror = \"y\"\nabout = [5, 0]", [5., 9., 2., 4.]),
+        ("mirror = \"y\"\nturn = 90", [-4., -2., 1., 5.]),
+        (
+            "mirror = \"y\"\nturn = 90\nmove = [1, 1]",
+            [-3., -1., 2., 6.],
+        ),
+        ("repeat = { count = 3, move = [10, 1] }", [1., 25., 2., 6.]),
+        ("repeat = { count = 4, turn = 90 }", [-5., 5., -5., 5.]),
+        (
+            "repeat = { count = 2, turn = 180, about = [5, 3] }",
+            [1., 9., 2., 4.],
+        ),
+        ("repeat = { count = 1, turn = 7 }", [1., 5., 2., 4.]),
+    ] {
+        let got = bounds(&format!("{plain}\n{placing}"));
+        let off = got
+            .iter()
+            .zip(expected)
+            .fold(0.0f64, |m, (a, b)| m.max((a - b).abs()));
+        assert!(off < 1e-12, "{placing}: {got:?}, not {expected:?}");
+    }
+}
+
+#[test]
+fn every_kind_of_figure_has_its_area() {
+    use std::f64::consts::PI;
+    for (step, area) in [
+        ("add = \"disc\"\nradius = 2", 4.0 * PI),
+        ("add = \"ellipse\"\nhalf_axes = [3, 2]\nturn = 30", 6.0 * PI),
+        ("add = \"rectangle\"\nsize = [3, 2]", 6.0),
+        ("add = \"polygon\"\npoints = [[0, 0], [0, 2], [3, 0]]", 3.0),
+        (
+            "add = \"sector\"\nradius = 2\nfrom = -90\nto = 180",
+            3.0 * PI,
+        ),
+        ("add = \"ring\"\ninner = 1\nouter = 2", 3.0 * PI),
+        ("add = \"stadium\"\nradius = 1\nstraight = 5", PI + 10.0),
+        (
+            "add = \"track\"\npoints = [[0, 0], [5, 0]]\nwidth = 2",
+            PI + 10.0,
+        ),
+        ("add = \"disc\"\nradius = 2\n[finish]\ngrow = 1", 9.0 * PI),
+        // Rounded first, then grown: corners of radius 1 + 1.
+        (
+            "add = \"rectangle\"\nsize = [6, 4]\n[finish]\nround = 1\ngrow = 1",
+            48.0 - 4.0 * (4.0 - PI),
+        ),
+    ] {
+        let d = parse(&format!("scale = \"reduced\"\n[[outline]]\n{step}\n"));
+        let made = d.outline().unwrap_or_else(|e| panic!("{e}"));
+        assert!(
+            (made.outline.area() / area - 1.0).abs() < 1e-12,
+            "{step}: {}",
+            made.outline.area()
+        );
+    }
+}
+
+#[test]
+fn steps_that_change_nothing_are_noted() {
+    let two = |first: &str, second: &str| {
+        let d = parse(&format!(
+            "scale = \"reduced\"\n[[outline]]\n{first}\n[[outline]]\n{second}\n"
+        ));
+        d.outline()
+            .unwrap_or_else(|e| panic!("{e}"))
+            .notes
+            .join("; ")
+    };
+    let disc = "add = \"disc\"\nradius = 2";
+    assert!(
+        two(disc, "cut = \"disc\"\nradius = 1\ncentre = [9, 0]")
+            .contains("step 2 (disc): the cut lies outside")
+    );
+    assert!(
+        two(disc, "add = \"disc\"\nradius = 1")
+            .contains("step 2 (disc): the added part lies inside")
+    );
+    assert!(two(disc, "keep = \"disc\"\nradius = 3").contains("step 2 (disc)"));
+    assert!(two(disc, "add = \"disc\"\nradius = 1\ncentre = [9, 0]").contains("2 separate parts"));
+    assert_eq!(two(disc, "cut = \"disc\"\nradius = 1"), "");
+}
+
+#[test]
 fn unreadable_documents_are_explained() {
     let e = Document::read(Path::new("no/such/dot.toml"))
         .expect_err("missing")

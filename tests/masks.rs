@@ -109,7 +109,7 @@ fn measure(outline: &Outline, distance: &dyn Fn(Point) -> f64) -> Found {
         lines,
         curves: outline.pieces().count() - lines,
         worst,
-        mean: (sum / count as f64).sqrt(),
+        mean: (sum / count).sqrt(),
     }
 }
 
@@ -135,7 +135,7 @@ fn shapes() -> Vec<Shape> {
         ]
         .iter()
         .map(|&(x, y)| {
-            let (s, k) = (angle as f64).to_radians().sin_cos();
+            let (s, k) = angle.to_radians().sin_cos();
             p(
                 118.0 + k * (x - 40.) - s * (y - 40.),
                 117.0 + s * (x - 40.) + k * (y - 40.),

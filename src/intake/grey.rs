@@ -134,7 +134,7 @@ fn greys(bytes: &[u8], wide: bool, colours: usize, opacity: bool) -> Vec<u16> {
             if one_colour {
                 alpha as u16
             } else {
-                (colour(p) * (alpha + 1) >> 16) as u16
+                ((colour(p) * (alpha + 1)) >> 16) as u16
             }
         })
         .collect()

@@ -78,12 +78,17 @@ fn table(account: &Account) -> Vec<String> {
         .collect()
 }
 
-/// Distance to the next level, its error the sum of both; a dash after the last.
+/// Distance to the next level, its error the sum of both; 0 where both may be one level, a dash
+/// after the last.
 fn spacing(levels: &[Level], k: usize) -> String {
     match levels.get(k + 1) {
         Some(next) => {
             let here = &levels[k];
-            concise(next.energy - here.energy, next.error + here.error)
+            let (gap, error) = (next.energy - here.energy, next.error + here.error);
+            if gap <= error {
+                return "0".to_owned();
+            }
+            concise(gap, error)
         }
         None => "-".to_owned(),
     }

@@ -122,8 +122,11 @@ fn fault(title: &str, span: Range<usize>, error: &FigureError) -> Fault {
 /// Traces of pictures and point lists, kept as long as their files do not change: the desk makes
 /// the outline anew after every key.
 #[derive(Clone, Debug, Default)]
-pub(super) struct Traces(Arc<Mutex<HashMap<(PathBuf, String), (Stamp, Taken)>>>);
+pub(super) struct Traces(Arc<Mutex<HashMap<Key, (Stamp, Taken)>>>);
 
+/// A file, and how it was read.
+type Key = (PathBuf, String);
+/// Time of the last change, and size.
 type Stamp = (Option<SystemTime>, u64);
 
 impl Traces {

@@ -21,7 +21,7 @@ pub(super) fn nearest<'a>(word: &str, known: impl IntoIterator<Item = &'a str>) 
 }
 
 /// "did you mean `x`?", or the list of what is known.
-pub(super) fn remedy<'a>(word: &str, known: &[&'a str], none: &str) -> String {
+pub(super) fn remedy(word: &str, known: &[&str], none: &str) -> String {
     match nearest(word, known.iter().copied()) {
         Some(k) => format!("did you mean `{k}`?"),
         None if known.is_empty() => none.to_owned(),

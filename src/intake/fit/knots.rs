@@ -86,23 +86,26 @@ pub(super) fn place(samples: &Samples, corners: &[Corner], trace: &Trace) -> Vec
     knots
 }
 
-/// Drops short runs that meet neither a corner nor another run: where a curve is merely flat, a
-/// line between two curves would add two jumps of curvature and gain nothing.
+/// Drops short runs that meet no corner: where a curve is merely flat, a line between two curves
+/// would add two jumps of curvature and gain nothing.
 fn drop_flats(marks: &mut Vec<Mark>, samples: &Samples, trace: &Trace) {
     let n = samples.len() as i64;
-    let least = 3 * samples.count(trace.run);
-    let ends = |mark: &Mark| match mark {
-        Mark::Corner(c) => (c.sample, c.sample),
-        Mark::Run(r) => (r.first, r.last),
+    let least = samples.count(trace.flat);
+    let meet = |a: &Mark, b: &Mark| {
+        let gap = match (a, b) {
+            (Mark::Run(a), Mark::Run(b)) => return bend(a, b, samples, trace).is_some(),
+            (Mark::Corner(c), Mark::Run(r)) => r.first - c.sample,
+            (Mark::Run(r), Mark::Corner(c)) => c.sample - r.last,
+            (Mark::Corner(_), Mark::Corner(_)) => return false,
+        };
+        gap.rem_euclid(n) <= 2 * reach(samples, trace)
     };
-    let near = |a: i64, b: i64| (b - a).rem_euclid(n) <= 2 * reach(samples, trace);
     let count = marks.len();
     let keep: Vec<bool> = (0..count)
         .map(|k| match &marks[k] {
             Mark::Run(run) if run.last - run.first < least => {
-                let (_, before) = ends(&marks[(k + count - 1) % count]);
-                let (after, _) = ends(&marks[(k + 1) % count]);
-                count > 1 && (near(before, run.first) || near(run.last, after))
+                let (before, after) = (&marks[(k + count - 1) % count], &marks[(k + 1) % count]);
+                count > 1 && (meet(before, &marks[k]) || meet(&marks[k], after))
             }
             _ => true,
         })

@@ -30,6 +30,8 @@ pub(super) struct Trace {
     pub(super) bend: f64,
     /// Least length of a straight run.
     pub(super) run: f64,
+    /// Least length of a straight run between two curves.
+    pub(super) flat: f64,
 }
 
 impl Trace {
@@ -41,6 +43,7 @@ impl Trace {
         window: 5.0,
         bend: 0.35,
         run: 8.0,
+        flat: 24.0,
     };
 
     /// A mask of black and white only, traced in pixels: the edge wavers by a third of a pixel,
@@ -51,6 +54,7 @@ impl Trace {
         window: 16.0,
         bend: 0.5,
         run: 30.0,
+        flat: 30.0,
     };
 
     /// Points that waver by `tolerance` about a smooth edge.
@@ -61,6 +65,7 @@ impl Trace {
             window: 20.0 * tolerance,
             bend: 0.5,
             run: 40.0 * tolerance,
+            flat: 120.0 * tolerance,
         }
     }
 
@@ -75,6 +80,7 @@ impl Trace {
             tolerance,
             window: self.window * stretch,
             run: self.run * stretch,
+            flat: self.flat * stretch,
             ..self
         }
     }
@@ -86,6 +92,7 @@ impl Trace {
             window: self.window * factor,
             blur: self.blur * factor,
             run: self.run * factor,
+            flat: self.flat * factor,
             ..self
         }
     }
