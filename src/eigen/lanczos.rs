@@ -43,7 +43,13 @@ pub struct Lanczos<'a, T> {
 
 impl<'a, T: Number> Lanczos<'a, T> {
     /// Starts with blocks of `b` vectors from `start` and noise; room for `cap` vectors.
-    pub fn new(mass: &'a CsMat<T>, shift: f64, b: usize, cap: usize, start: &[Vec<T>]) -> Self {
+    pub fn new(
+        mass: &'a CsMat<T>,
+        shift: f64,
+        b: usize,
+        cap: usize,
+        start: &[Vec<T>],
+    ) -> Result<Self, EigenError> {
         let n = mass.rows();
         let cap = cap.min(n);
         let b = b.min(cap);
@@ -74,8 +80,8 @@ impl<'a, T: Number> Lanczos<'a, T> {
         for x in &mut block {
             *x += <T as Scalar>::from_re(level * out.noise());
         }
-        out.append(block);
-        out
+        out.append(block)?;
+        Ok(out)
     }
 
     fn noise(&mut self) -> f64 {
@@ -98,7 +104,7 @@ impl<'a, T: Number> Lanczos<'a, T> {
 
     /// Orthogonalises a block against the basis, orthonormalises it and appends it;
     /// returns its coefficients on the basis and the factor R of the rest.
-    fn append(&mut self, mut w: Vec<T>) -> (Vec<T>, Vec<T>) {
+    fn append(&mut self, mut w: Vec<T>) -> Result<(Vec<T>, Vec<T>), EigenError> {
         let (n, b, m) = (self.n, w.len() / self.n, self.len());
         let mut coefficients = vec![T::default(); m * b];
         for _ in 0..2 {
@@ -110,9 +116,9 @@ impl<'a, T: Number> Lanczos<'a, T> {
         }
         let r = match self.cholesky_qr(&mut w, b) {
             Some(r) => r,
-            None => self.gram_schmidt(&mut w, b),
+            None => self.gram_schmidt(&mut w, b)?,
         };
-        (coefficients, r)
+        Ok((coefficients, r))
     }
 
     /// Orthonormalises a block by the Cholesky factor of its Gram matrix and appends it; `None`,
@@ -134,12 +140,13 @@ impl<'a, T: Number> Lanczos<'a, T> {
 
     /// Orthonormalises and appends vector by vector, twice each; a direction that vanishes is
     /// replaced by noise and gets a zero in R.
-    fn gram_schmidt(&mut self, w: &mut [T], b: usize) -> Vec<T> {
+    fn gram_schmidt(&mut self, w: &mut [T], b: usize) -> Result<Vec<T>, EigenError> {
         let n = self.n;
         let m = self.len();
         let mut r = vec![T::default(); b * b];
         for (i, diagonal) in (0..b).map(|i| (i, i * b + i)) {
             let mut replaced = false;
+            let mut tries = 0;
             let first = loop {
                 let first = self.norm(&w[i * n..(i + 1) * n]);
                 let size = first.0;
@@ -163,6 +170,12 @@ impl<'a, T: Number> Lanczos<'a, T> {
                     break (left, mx);
                 }
                 replaced = true;
+                tries += 1;
+                if tries > 8 {
+                    return Err(EigenError::IllPosed(
+                        "the mass is not positive definite".into(),
+                    ));
+                }
                 for k in 0..n {
                     w[i * n + k] = Scalar::from_re(self.noise());
                 }
@@ -179,7 +192,7 @@ impl<'a, T: Number> Lanczos<'a, T> {
             self.mv
                 .extend(mx.into_iter().map(|x| Scalar::scale(x, inv)));
         }
-        r
+        Ok(r)
     }
 
     /// M-norm of a vector, and M times it.
@@ -195,14 +208,14 @@ impl<'a, T: Number> Lanczos<'a, T> {
     }
 
     /// One block step.
-    pub fn step(&mut self, factor: &mut Factor<'_, T>) {
+    pub fn step(&mut self, factor: &mut Factor<'_, T>) -> Result<(), EigenError> {
         let (n, from) = (self.n, self.done);
         let b = self.len() - from;
         let mut w = self.mv[from * n..].to_vec();
         factor.solve(&mut w, b);
         self.solves += b;
         let m = self.len();
-        let (c, r) = self.append(w);
+        let (c, r) = self.append(w)?;
         for j in 0..b {
             for i in 0..m {
                 self.t[(from + j) * self.cap + i] = c[j * m + i];
@@ -211,6 +224,7 @@ impl<'a, T: Number> Lanczos<'a, T> {
         }
         self.done = m;
         self.tail = r;
+        Ok(())
     }
 
     /// Ritz values, and their residuals.
@@ -297,7 +311,7 @@ impl<'a, T: Number> Lanczos<'a, T> {
     ) -> Result<Vec<Ritz>, EigenError> {
         let mut next_look = keep + keep / 2 + 2 * self.b;
         for _ in 0..100_000 {
-            self.step(factor);
+            self.step(factor)?;
             if self.done < next_look && self.has_room() {
                 continue;
             }

@@ -183,7 +183,7 @@ impl<'a, T: Number> Work<'a, T> {
             } else {
                 &[]
             };
-            let mut lanczos = Lanczos::new(self.problem.mass, shift, b, cap, start);
+            let mut lanczos = Lanczos::new(self.problem.mass, shift, b, cap, start)?;
             let tolerance = self.settings.tolerance;
             let low_value = if bottom { f64::NEG_INFINITY } else { low.value };
             let pairs = lanczos.run(&mut factor, inside + above, self.watch, |p| {

@@ -31,11 +31,6 @@ impl Edge {
             )
         }
     }
-
-    /// A point on it.
-    pub fn middle(&self) -> Point {
-        self.piece.at(0.5)
-    }
 }
 
 /// One appearance of an edge in a loop: edges that coincide are kept once and used twice.
@@ -122,7 +117,8 @@ impl Arrangement {
                 }
                 let piece = self.trimmed(whole, (t0, t1), from, to);
                 let middle = piece.at(0.5);
-                if from == to && (middle - self.vertices[from]).norm() <= 10.0 * eps {
+                let back = t1 - t0 < 1e-6 || (middle - self.vertices[from]).norm() <= 10.0 * eps;
+                if from == to && back {
                     continue;
                 }
                 let twins = known.entry((from.min(to), from.max(to))).or_default();

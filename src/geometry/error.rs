@@ -60,6 +60,14 @@ pub enum GeometryError {
         /// Where.
         at: Point,
     },
+    /// A boundary that is not closed.
+    #[error("the boundary is open: it ends at ({:.6}, {:.6}) and goes on from ({:.6}, {:.6})", from.x, from.y, to.x, to.y)]
+    Open {
+        /// Where a piece ends.
+        from: Point,
+        /// Where the next one starts.
+        to: Point,
+    },
     /// Nothing is enclosed.
     #[error("the outline encloses no area")]
     NoArea,

@@ -9,13 +9,14 @@
 //! region and never show.
 
 use super::error::GeometryError;
+use super::fillet::CORNER;
 use super::outline::{Loop, Outline, turn_between};
 use super::overlay::FillRule;
 use super::piece::Piece;
 use super::point::{Box2, Point};
 
-/// Chords that stand in for a folded stretch.
-const FOLD_CHORDS: usize = 16;
+/// Turn of the chords that stand in for a folded stretch, radians.
+const FOLD_TURN: f64 = 0.3;
 
 impl Outline {
     /// The outline with its edge moved outwards by `by` (inwards if negative): all points within
@@ -84,13 +85,14 @@ impl Outline {
     }
 }
 
-/// The offset of one piece as a run of pieces; `whole` unless it starts and ends on the boundary
-/// itself.
+/// The offset of one piece as a run of pieces from one point to another, and the outward normals
+/// of the piece at its start and its end.
 struct Strand {
     pieces: Vec<Piece>,
     from: Point,
     to: Point,
-    whole: bool,
+    lead: Point,
+    aim: Point,
 }
 
 /// The raw boundary, crossings and all.
@@ -108,16 +110,20 @@ fn raw(pieces: &[Piece], by: f64) -> Loop {
     Loop { pieces: out }
 }
 
+/// Closes the gap at a vertex. A strand that is not whole may end on the vertex itself.
 fn join(out: &mut Vec<Piece>, (a, b): (&Strand, &Strand), vertex: Point, turn: f64, by: f64) {
-    let (from, to) = (a.to, b.from);
-    let smooth = turn.abs() < 1e-7 && a.whole && b.whole;
-    if smooth {
-        push_line(out, from, to, by);
-    } else if turn * by > 0.0 && a.whole && b.whole {
-        out.push(Piece::arc(vertex, by.abs(), (from - vertex).angle(), turn));
+    if turn.abs() < CORNER && (b.from - a.to).norm() <= 2.0 * CORNER * by.abs() {
+        push_line(out, a.to, b.from, by);
+    } else if turn * by > 0.0 && turn.abs() >= CORNER {
+        // The side that opens: the sector about the vertex is swept as well.
+        let arc = Piece::arc(vertex, by.abs(), (a.aim * by).angle(), turn);
+        push_line(out, a.to, vertex + a.aim * by, by);
+        let end = vertex + b.lead * by;
+        out.push(arc);
+        push_line(out, end, b.from, by);
     } else {
-        push_line(out, from, vertex, by);
-        push_line(out, vertex, to, by);
+        push_line(out, a.to, vertex, by);
+        push_line(out, vertex, b.from, by);
     }
 }
 
@@ -130,6 +136,7 @@ fn push_line(out: &mut Vec<Piece>, from: Point, to: Point, by: f64) {
 
 fn strand(piece: &Piece, by: f64) -> Strand {
     let (p, q) = (piece.start(), piece.end());
+    let (lead, aim) = (-piece.tangent(0.0).left(), -piece.tangent(1.0).left());
     let Some(parallel) = piece.offset(-by) else {
         // An arc at least as tight as the distance sweeps its sector up to the centre.
         let centre = match piece {
@@ -140,7 +147,8 @@ fn strand(piece: &Piece, by: f64) -> Strand {
             pieces: vec![Piece::line(p, centre), Piece::line(centre, q)],
             from: p,
             to: q,
-            whole: false,
+            lead,
+            aim,
         };
     };
     // An offset is the parallel of its base; curvature and folds are those of the piece itself.
@@ -153,7 +161,8 @@ fn strand(piece: &Piece, by: f64) -> Strand {
             from: parallel.start(),
             to: parallel.end(),
             pieces: vec![parallel],
-            whole: true,
+            lead,
+            aim,
         };
     }
     let mut out: Vec<Piece> = Vec::new();
@@ -179,19 +188,37 @@ fn strand(piece: &Piece, by: f64) -> Strand {
         from: ends.first().map_or(p, |e| e.0),
         to: ends.last().map_or(q, |e| e.1),
         pieces: out,
-        whole: false,
+        lead,
+        aim,
     }
 }
 
 /// Rectangles on the chords of a stretch, joined through its points.
+///
+/// A chord lies deeper than the curve by its height; the rectangle is shorter by twice that, so
+/// that it never reaches beyond the distance. What it misses there lies near the cusps, under
+/// the strips of the other branch.
 fn chord_strips(part: &Piece, by: f64) -> Vec<Piece> {
-    let points: Vec<Point> = (0..=FOLD_CHORDS)
-        .map(|k| part.at(k as f64 / FOLD_CHORDS as f64))
-        .collect();
+    let turn: f64 = (0..4)
+        .map(|k| {
+            let (a, b) = (
+                part.tangent(0.25 * f64::from(k)),
+                part.tangent(0.25 * f64::from(k + 1)),
+            );
+            a.cross(b).atan2(a.dot(b)).abs()
+        })
+        .sum();
+    let count = (turn / FOLD_TURN).ceil().clamp(2.0, 24.0) as usize;
+    let t = |k: usize| k as f64 / count as f64;
+    let points: Vec<Point> = (0..=count).map(|k| part.at(t(k))).collect();
     let mut out = Vec::new();
-    for w in points.windows(2) {
-        let out_by = (w[1] - w[0]).unit().left() * -by;
-        let (a, b) = (w[0] + out_by, w[1] + out_by);
+    for (k, w) in points.windows(2).enumerate() {
+        let normal = (w[1] - w[0]).unit().left();
+        let height = (part.at(t(k) + 0.5 / count as f64) - w[0])
+            .dot(normal)
+            .abs();
+        let depth = by.signum() * (by.abs() - 2.0 * height).max(0.0);
+        let (a, b) = (w[0] - normal * depth, w[1] - normal * depth);
         out.extend([
             Piece::line(w[0], a),
             Piece::line(a, b),
@@ -300,7 +327,7 @@ mod tests {
             let e = Outline::ellipse(pt(0., 0.), pt(2., 1.), 0.0)
                 .unwrap()
                 .transformed(&s);
-            for d in [0.45, 0.55, 0.8, 0.95] {
+            for d in [0.45, 0.5001, 0.503, 0.55, 0.8, 0.95] {
                 let g = e.grown(-d).unwrap();
                 assert_eq!(g.loops.len(), 1);
                 for p in g.pieces() {

@@ -2,7 +2,6 @@
 
 use super::piece::Piece;
 use super::point::{Point, exact_polar, pt};
-use std::f64::consts::TAU;
 
 /// A common point of two pieces, by its parameter on each.
 pub(super) type Contact = (f64, f64);
@@ -218,10 +217,10 @@ fn search(a: &Piece, b: &Piece, eps: f64, mut report: impl FnMut(f64, f64)) {
     };
     let (ca, cb) = (chords(a), chords(b));
     for w in ca.windows(2) {
-        for v in cb.windows(2) {
+        for (j, v) in cb.windows(2).enumerate() {
             if segment_gap(w[0].1, w[1].1, v[0].1, v[1].1) <= 2.0 * tolerance + eps {
-                let guess = 0.5 * (v[0].0 + v[1].0);
-                for (t, s) in crossings(a, b, w[0].0, w[1].0, guess, eps) {
+                let around = [cb[j.saturating_sub(1)].0, cb[(j + 2).min(cb.len() - 1)].0];
+                for (t, s) in crossings(a, b, [w[0].0, w[1].0], around, eps) {
                     report(t, s);
                 }
             }
@@ -244,13 +243,19 @@ pub(super) fn segment_gap(a: Point, b: Point, c: Point, d: Point) -> f64 {
 
 /// Roots on [lo, hi] of the signed distance g(t) of `a` from `b`, and touches where |g| ≤ eps at
 /// an extremum.
-fn crossings(a: &Piece, b: &Piece, lo: f64, hi: f64, guess: f64, eps: f64) -> Vec<Contact> {
-    let foot = |t: f64| b.foot_near(a.at(t), guess);
+fn crossings(a: &Piece, b: &Piece, [lo, hi]: [f64; 2], around: [f64; 2], eps: f64) -> Vec<Contact> {
+    let foot = |t: f64| b.foot_in(a.at(t), around[0], around[1]);
     let g = |t: f64| {
         let s = foot(t);
         (a.at(t) - b.at(s)).dot(b.tangent(s).left())
     };
     let slope = |t: f64| a.tangent(t).dot(b.tangent(foot(t)).left());
+    // Only where the foot lies on the piece itself: continued past a cusp, a parallel turns back.
+    let (lo, hi) = (onto(&foot, lo, hi, around), onto(&foot, hi, lo, around));
+    let ordered = lo < hi;
+    if !ordered {
+        return Vec::new();
+    }
     let mid = 0.5 * (lo + hi);
     if [lo, mid, hi].iter().all(|t| g(*t).abs() <= 2.0 * eps) {
         return Vec::new(); // A common stretch; its ends are found as end points.
@@ -274,15 +279,37 @@ fn crossings(a: &Piece, b: &Piece, lo: f64, hi: f64, guess: f64, eps: f64) -> Ve
     out
 }
 
+/// `t` moved towards `other` until its foot lies in the given range; beyond `other` if it never does.
+fn onto(foot: &impl Fn(f64) -> f64, t: f64, other: f64, around: [f64; 2]) -> f64 {
+    let (s, r) = (foot(t), foot(other));
+    let bound = if s < around[0] {
+        around[0]
+    } else if s > around[1] {
+        around[1]
+    } else {
+        return t;
+    };
+    if (s - bound) * (r - bound) > 0.0 {
+        return other + (other - t);
+    }
+    bisect(&|x| foot(x) - bound, t, other)
+}
+
 /// The sign change of f in [lo, hi], by the Illinois rule.
-fn bisect(f: &impl Fn(f64) -> f64, mut lo: f64, mut hi: f64) -> f64 {
+fn bisect(f: &impl Fn(f64) -> f64, lo: f64, hi: f64) -> f64 {
+    let (mut lo, mut hi) = (lo.min(hi), lo.max(hi));
     let (mut flo, mut fhi) = (f(lo), f(hi));
     let mut side = 0;
-    for _ in 0..80 {
+    for k in 0..80 {
         if hi - lo <= 1e-16 || flo == fhi {
             break;
         }
-        let t = ((lo * fhi - hi * flo) / (fhi - flo)).clamp(lo, hi);
+        // A plain halving now and then, should the function be too crooked for the rule.
+        let t = if k % 4 == 3 {
+            0.5 * (lo + hi)
+        } else {
+            ((lo * fhi - hi * flo) / (fhi - flo)).clamp(lo, hi)
+        };
         let ft = f(t);
         if ft == 0.0 {
             return t;
@@ -342,6 +369,7 @@ pub(super) fn meeting_boxes(boxes: &[super::point::Box2]) -> Vec<(usize, usize)>
 #[cfg(test)]
 mod tests {
     use super::*;
+    use std::f64::consts::TAU;
 
     fn circle(x: f64, y: f64, r: f64) -> Piece {
         Piece::arc(pt(x, y), r, 0.1, TAU)

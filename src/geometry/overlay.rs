@@ -35,11 +35,13 @@ struct Tag {
 }
 
 impl OverlayEdgeData for Tag {
-    /// Set when different edges fell on each other.
-    type Store = bool;
+    /// Chords of different edges that fell on each other.
+    type Store = Vec<Tag>;
 
-    fn merge(ctx: EdgeDataMerge<ShapeCountBoolean, Self>, clash: &mut bool) -> Self {
-        *clash |= ctx.lhs_data != ctx.rhs_data;
+    fn merge(ctx: EdgeDataMerge<ShapeCountBoolean, Self>, clashes: &mut Vec<Self>) -> Self {
+        if ctx.lhs_data != ctx.rhs_data {
+            clashes.extend([ctx.lhs_data, ctx.rhs_data]);
+        }
         ctx.lhs_data
     }
 }
@@ -115,10 +117,7 @@ fn select(
         }
     }
     let shapes = engine.build_vector_shapes(rule, fill);
-    if *engine.data_store() {
-        // Different edges on the same chord: where does not matter, finer chords part them.
-        return Err(arrangement.edges[0].middle());
-    }
+    let clashes = engine.data_store();
     let mut out = Vec::new();
     for contour in shapes.iter().flatten() {
         let mut steps: Vec<(Step, u32)> = Vec::with_capacity(contour.len());
@@ -126,7 +125,8 @@ fn select(
             let line = &lattice[e.data.edge as usize];
             let k = e.data.chord as usize;
             let forward = e.a == line[k] && e.b == line[k + 1];
-            if !forward && !(e.a == line[k + 1] && e.b == line[k]) {
+            let backward = e.a == line[k + 1] && e.b == line[k];
+            if !(forward || backward) || clashes.contains(&e.data) {
                 return Err(grid.point(e.a));
             }
             steps.push(((e.data.edge as usize, forward), e.data.chord));

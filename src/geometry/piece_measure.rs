@@ -155,6 +155,10 @@ impl Piece {
 
     /// Root of (P(t) − p)·v(t) in [lo, hi]: Newton with curvature, kept in by bisection.
     fn foot_within(&self, p: Point, mut lo: f64, mut hi: f64, mut t: f64) -> f64 {
+        if let Self::Offset { base, .. } = self {
+            // Parallels share their normals; the base has no cusps.
+            return base.foot_within(p, lo, hi, t);
+        }
         let fine = 1e-16 * (1.0 + self.velocity(t).norm());
         for _ in 0..60 {
             let (r, v) = (self.at(t) - p, self.velocity(t));
@@ -179,24 +183,23 @@ impl Piece {
         t
     }
 
-    /// Foot of the perpendicular from `p` on the curve continued beyond its ends, by Newton from
-    /// `guess`.
-    pub(super) fn foot_near(&self, p: Point, guess: f64) -> f64 {
-        let mut t = guess;
-        for _ in 0..30 {
-            let (r, v) = (self.at(t) - p, self.velocity(t));
-            let speed2 = v.dot(v);
-            let bend = (1.0 + self.curvature(t) * r.dot(v.unit().left())).max(0.2);
-            let step = (r.dot(v) / (speed2 * bend)).clamp(-0.5, 0.5);
-            if !step.is_finite() {
-                break;
-            }
-            t = (t - step).clamp(-0.5, 1.5);
-            if step.abs() < 1e-16 {
-                break;
-            }
+    /// Foot of the perpendicular from `p` within [lo, hi]; a value beyond the end it lies behind.
+    pub(super) fn foot_in(&self, p: Point, lo: f64, hi: f64) -> f64 {
+        if let Self::Offset { base, .. } = self {
+            return base.foot_in(p, lo, hi);
         }
-        t
+        let pull = |t: f64| {
+            let v = self.velocity(t);
+            (self.at(t) - p).dot(v) / v.dot(v)
+        };
+        let (a, b) = (pull(lo), pull(hi));
+        if a >= 0.0 {
+            return lo - a;
+        }
+        if b <= 0.0 {
+            return hi - b;
+        }
+        self.foot_within(p, lo, hi, lo + (hi - lo) * a / (a - b))
     }
 }
 

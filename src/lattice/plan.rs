@@ -18,6 +18,8 @@ pub struct Demand {
     pub cell: Option<f64>,
     /// Spline degree.
     pub degree: usize,
+    /// Attempts before this one: each makes the corner functions reach farther.
+    pub round: usize,
 }
 
 /// A lattice to build.
@@ -55,9 +57,25 @@ impl Plan {
         let mut splits = Splits::default();
         let mut list = spots(outline, h);
         let mut corners = Vec::new();
+        let lengths = chords(outline);
         for (corner, edges) in worthwhile(outline, demand, h) {
-            let cells = cells_per_radius(bend(&corner), demand.accuracy);
+            let cells = cells_per_radius(
+                bend(&corner),
+                demand.accuracy / 5f64.powi(demand.round as i32),
+            );
             let free = free_radius(outline, &corner, cells * h);
+            // two corners in one cell cannot both be integrated well
+            let short = edges
+                .map(|k| lengths[k as usize])
+                .into_iter()
+                .fold(f64::INFINITY, f64::min);
+            if short < PER_EDGE * h {
+                list.push(Spot {
+                    at: corner.at,
+                    cell: short / PER_EDGE,
+                    reach: 0.5 * short,
+                });
+            }
             if free < cells * h {
                 list.push(Spot {
                     at: corner.at,
@@ -65,7 +83,12 @@ impl Plan {
                     reach: free,
                 });
             }
-            corners.push(CornerSpace::new(&corner, free, p_most(demand.degree), edges));
+            corners.push(CornerSpace::new(
+                &corner,
+                free,
+                p_most(demand.degree),
+                edges,
+            ));
         }
         split_for(&grid, &list, &mut splits);
         Self {
@@ -80,6 +103,17 @@ impl Plan {
 /// Highest exponent of a corner function: above it splines of the degree do as well.
 fn p_most(degree: usize) -> f64 {
     degree as f64 + 0.01
+}
+
+/// Cells along an edge between two corners with functions.
+const PER_EDGE: f64 = 1.6;
+
+/// Distance of the ends of each piece.
+fn chords(outline: &Outline) -> Vec<f64> {
+    outline
+        .pieces()
+        .map(|p| (p.end() - p.start()).norm())
+        .collect()
 }
 
 /// How far a corner is from straight, radians.
@@ -103,10 +137,7 @@ fn cells_per_radius(bend: f64, accuracy: f64) -> f64 {
 fn worthwhile(outline: &Outline, demand: &Demand, h: f64) -> Vec<(Corner, [u32; 2])> {
     let size = outline.bounds().size();
     let area = size.x * size.y;
-    let lengths: Vec<f64> = outline
-        .pieces()
-        .map(|p| (p.end() - p.start()).norm())
-        .collect();
+    let lengths = chords(outline);
     let mut all: Vec<(f64, (Corner, [u32; 2]))> = singular_corners(outline)
         .into_iter()
         // so sharp that the wave dies out smoothly in it

@@ -64,11 +64,12 @@ pub fn solve(
     let from = wanted.from.map(|e| e / kinetic);
     let below = from.map_or(0.0, |l| weyl::count(area, perimeter, l));
     let top = weyl::level(area, perimeter, below + wanted.count as f64 + 1.5);
-    let demand = Demand {
+    let mut demand = Demand {
         wave_number: top.sqrt(),
         accuracy: wanted.accuracy,
         cell: wanted.cell,
         degree: wanted.degree.unwrap_or(DEGREE),
+        round: 0,
     };
     let window = match from {
         None => Window::Lowest(wanted.count),
@@ -110,6 +111,7 @@ pub fn solve(
         }
         match step {
             Next::Finer(factor) => {
+                demand.round += 1;
                 plan = Plan::with_cell(outline, &demand, plan.grid.h * factor);
                 extra.clear();
             }

@@ -72,14 +72,6 @@ impl Tail {
             })
             .collect();
         let (values, vectors) = symmetric_eigen(&s, q)?;
-        let keep: Vec<usize> = (0..q).filter(|&i| values[i] > DROP).collect();
-        let w = keep.len();
-        // T: kept direction f in terms of the scaled raw functions
-        let mut t = Vec::with_capacity(q * w);
-        for &f in &keep {
-            let c = 1.0 / values[f].sqrt();
-            t.extend(vectors[f * q..(f + 1) * q].iter().map(|v| c * v));
-        }
         // m − MX, and Xᵀ of it and of m
         let mut rest = m.clone();
         for (r, x) in rest.chunks_exact_mut(n).zip(x.chunks_exact(n)) {
@@ -95,26 +87,41 @@ impl Tail {
                     - 0.5 * (xm[j * q + i] + xm[i * q + j])
             })
             .collect();
-        let times = |a: &[f64], rows: usize| {
-            let mut out = vec![0.0; rows * w];
-            combine(&mut out, w, a, q, &t, rows, 1.0);
-            out
-        };
-        let (mass, splines, gt) = (times(&rest, n), times(&x, n), times(&g, q));
-        let own = project(&t, w, &gt, w, q);
-        let own_mass = (0..w * w)
-            .map(|e| 0.5 * (own[e] + own[(e % w) * w + e / w]))
-            .collect();
-        let raw = (0..q * w)
-            .map(|e| d[e / w] * t[(e % w) * q + e / w])
-            .collect();
-        let split = |v: Vec<f64>| v.chunks_exact(n).map(<[f64]>::to_vec).collect();
-        Ok(Self {
-            mass: split(mass),
-            own_mass,
-            splines: split(splines),
-            raw,
-        })
+        // directions that quadrature errors could fake are dropped: the mass divides by their size
+        let mut drop = DROP.max(1e3 * border.asymmetry);
+        loop {
+            let keep: Vec<usize> = (0..q).filter(|&i| values[i] > drop).collect();
+            let w = keep.len();
+            // T: kept direction f in terms of the scaled raw functions
+            let mut t = Vec::with_capacity(q * w);
+            for &f in &keep {
+                let c = 1.0 / values[f].sqrt();
+                t.extend(vectors[f * q..(f + 1) * q].iter().map(|v| c * v));
+            }
+            let times = |a: &[f64], rows: usize| {
+                let mut out = vec![0.0; rows * w];
+                combine(&mut out, w, a, q, &t, rows, 1.0);
+                out
+            };
+            let own = project(&t, w, &times(&g, q), w, q);
+            let own_mass: Vec<f64> = (0..w * w)
+                .map(|e| 0.5 * (own[e] + own[(e % w) * w + e / w]))
+                .collect();
+            let (spread, _) = symmetric_eigen(&own_mass, w)?;
+            if spread.first().is_some_and(|e| *e <= 0.0) && drop < 1e-2 {
+                drop *= 30.0;
+                continue;
+            }
+            let split = |v: Vec<f64>| v.chunks_exact(n).map(<[f64]>::to_vec).collect();
+            return Ok(Self {
+                mass: split(times(&rest, n)),
+                own_mass,
+                splines: split(times(&x, n)),
+                raw: (0..q * w)
+                    .map(|e| d[e / w] * t[(e % w) * q + e / w])
+                    .collect(),
+            });
+        }
     }
 }
 
