@@ -51,6 +51,7 @@ mod example {
     pub fn spectrum(count: usize) -> Spectrum {
         let p = |x, y| Point { x, y };
         let square = Outline::polygon(&[p(0., 0.), p(60., 0.), p(60., 60.), p(0., 60.)]);
+        let square = square.expect("a square");
         let wanted = Wanted {
             count,
             ..Wanted::default()
