@@ -86,8 +86,10 @@ pub struct Picture {
 pub struct Running {
     /// When it began.
     pub since: Duration,
-    /// How far it is.
+    /// How far its present stage is.
     pub step: Option<Step>,
+    /// When that stage began.
+    pub stage: Duration,
 }
 
 /// What is known of the levels.
