@@ -114,7 +114,10 @@ fn gauge(state: &State, word: &str, running: &Running) -> Line<'static> {
     if part > 0.05 {
         let spent = state.now.saturating_sub(running.stage).as_secs_f64();
         let left = spent * (1.0 - part) / part;
-        spans.push(Span::styled(format!("  {left:.0} s left"), paint.quiet()));
+        if left >= 1.0 {
+            let text = format!("  {left:.0} s left");
+            spans.push(Span::styled(text, paint.quiet()));
+        }
     }
     Line::from(spans)
 }
