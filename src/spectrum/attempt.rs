@@ -1,0 +1,118 @@
+//! One solve on one lattice.
+
+use super::bars;
+use super::system::System;
+use super::tail::Tail;
+use super::{SpectrumError, Timings};
+use crate::eigen::{self, Factor, Found, Problem, Settings, Window};
+use crate::geometry::Outline;
+use crate::lattice::{CornerSpace, Lattice, Plan};
+use crate::operators::{Functions, Residual, assemble, border, residual};
+use crate::progress::Watch;
+use std::time::Instant;
+
+/// What one lattice gave.
+pub struct Attempt {
+    /// The lattice.
+    pub lattice: Lattice,
+    /// Corner functions used.
+    pub corners: Vec<CornerSpace>,
+    /// From the eigensolver.
+    pub found: Found<f64>,
+    /// The modes, ∫u² = 1.
+    pub functions: Functions,
+    /// Residuals.
+    pub residual: Residual,
+    /// Value and error of each level, λ.
+    pub bars: Vec<(f64, f64)>,
+    /// Unknowns in all.
+    pub unknowns: usize,
+    /// |S − Sᵀ|/|S| of the corner functions.
+    pub asymmetry: f64,
+}
+
+/// Above this the quadrature of the corner functions is not to be trusted.
+pub const ASYMMETRY: f64 = 1e-8;
+/// Largest factor, bytes.
+const MEMORY: f64 = 12e9;
+/// Relative residual the eigensolver stops at; the level's error is of its square.
+const TOLERANCE: f64 = 1e-7;
+
+impl Attempt {
+    /// Assembles and solves.
+    pub fn new(
+        outline: &Outline,
+        plan: Plan,
+        window: Window,
+        guess: f64,
+        timings: &mut Timings,
+        watch: &Watch,
+    ) -> Result<Self, SpectrumError> {
+        let clock = Instant::now();
+        let lattice = Lattice::new(outline, plan.grid, plan.degree, &plan.splits)?;
+        timings.lattice += ms(clock);
+        let clock = Instant::now();
+        let pair = assemble(&lattice, watch)?;
+        let border = border(&lattice, plan.corners);
+        let places = lattice.places();
+        timings.operators += ms(clock);
+        let clock = Instant::now();
+        let tail = if border.is_empty() {
+            Tail::default()
+        } else {
+            let k = sprs::CsMat::new(
+                (pair.len(), pair.len()),
+                pair.starts.clone(),
+                pair.columns.clone(),
+                pair.stiffness.clone(),
+            );
+            let plan = eigen::Plan::new(&k, &places, 0, MEMORY)?;
+            let mut factor = Factor::new(&plan, &k, None)?;
+            Tail::new(&pair, &border, |b, count| {
+                factor.solve(b, count);
+                Ok(())
+            })?
+        };
+        timings.factor += ms(clock);
+        let clock = Instant::now();
+        let system = System::new(pair, &tail, places);
+        timings.operators += ms(clock);
+        let problem = Problem {
+            stiffness: &system.stiffness,
+            mass: &system.mass,
+            places: &system.places,
+            tail: system.tail,
+        };
+        let settings = Settings {
+            window,
+            tolerance: TOLERANCE,
+            start: None,
+            guess: Some(guess),
+            memory: MEMORY,
+        };
+        let found = eigen::solve(&problem, &settings, watch)?;
+        timings.factor += found.factor_ms;
+        timings.solve += found.solve_ms;
+        let clock = Instant::now();
+        let functions = system.functions(&lattice, &tail, &found.vectors);
+        let residual = residual(&lattice, &border.corners, &functions, &found.values);
+        let bars = (0..found.values.len())
+            .map(|i| bars::bar(found.values[i], residual.total[i], found.residuals[i]))
+            .collect();
+        timings.solve += ms(clock);
+        Ok(Self {
+            unknowns: system.places.len(),
+            corners: border.corners,
+            asymmetry: border.asymmetry,
+            lattice,
+            found,
+            functions,
+            residual,
+            bars,
+        })
+    }
+}
+
+fn ms(since: Instant) -> f64 {
+    since.elapsed().as_secs_f64() * 1e3
+}
