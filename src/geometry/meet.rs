@@ -265,8 +265,7 @@ fn crossings(a: &Piece, b: &Piece, [lo, hi]: [f64; 2], around: [f64; 2], eps: f6
     let slope = |t: f64| a.tangent(t).dot(b.tangent(foot(t)).left());
     // Only where the foot lies on the piece itself: continued past a cusp, a parallel turns back.
     let (lo, hi) = (onto(&foot, lo, hi, around), onto(&foot, hi, lo, around));
-    let ordered = lo < hi;
-    if !ordered {
+    if lo >= hi {
         return Vec::new();
     }
     let mid = 0.5 * (lo + hi);
@@ -380,6 +379,7 @@ pub(super) fn meeting_boxes(boxes: &[super::point::Box2]) -> Vec<(usize, usize)>
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
     use std::f64::consts::TAU;

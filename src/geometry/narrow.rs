@@ -124,14 +124,14 @@ impl Outline {
                 let normal = (c.b - c.a).unit().left() * sign;
                 offer(width, (c.a + c.b) * 0.5 + normal * (0.5 * width));
                 let (a, b) = (pieces[c.piece], pieces[h.piece]);
-                if let Some((p, q)) = closest_approach(a, c.t, b, h.t) {
-                    if (p - q).norm() <= width {
-                        offer((p - q).norm(), (p + q) * 0.5);
-                    }
+                if let Some((p, q)) = closest_approach(a, c.t, b, h.t)
+                    && (p - q).norm() <= width
+                {
+                    offer((p - q).norm(), (p + q) * 0.5);
                 }
             }
         }
-        for (width, at) in self.from_corners(sign) {
+        for (width, at) in self.corner_gaps(sign) {
             offer(width, at);
         }
         best
@@ -139,7 +139,7 @@ impl Outline {
 
     /// Shortest ways from every corner that points into the space looked at, to any wall they
     /// meet squarely or to another such corner.
-    fn from_corners(&self, sign: f64) -> Vec<(f64, Point)> {
+    fn corner_gaps(&self, sign: f64) -> Vec<(f64, Point)> {
         let mut corners = Vec::new();
         for l in &self.loops {
             let n = l.pieces.len();
@@ -337,6 +337,7 @@ impl ChordGrid {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::*;
