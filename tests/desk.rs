@@ -18,6 +18,7 @@ use std::time::Duration;
 fn rectangle(width: f64, height: f64) -> Outline {
     let at = |x, y| Point { x, y };
     Outline::polygon(&[at(0., 0.), at(width, 0.), at(width, height), at(0., height)])
+        .expect("a rectangle")
 }
 
 fn document(outline: Outline) -> Document {

@@ -188,7 +188,8 @@ mod example {
     /// they are 11, 21, 12, 31.
     pub fn box_modes() -> Modes {
         let p = |x, y| Point { x, y };
-        let outline = Outline::polygon(&[p(1., 1.), p(4., 1.), p(4., 3.), p(1., 3.)]);
+        let outline =
+            Outline::polygon(&[p(1., 1.), p(4., 1.), p(4., 3.), p(1., 3.)]).expect("a rectangle");
         let wanted = Wanted {
             count: 4,
             ..Wanted::default()

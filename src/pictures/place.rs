@@ -154,7 +154,7 @@ mod tests {
 
     #[test]
     fn the_disc_covers_its_area() {
-        let disc = Outline::disc(at(5.0, 5.0), 5.0);
+        let disc = Outline::disc(at(5.0, 5.0), 5.0).expect("a disc");
         let view = View::fit(
             disc.bounds(),
             Area {
