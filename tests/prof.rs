@@ -4,7 +4,7 @@ use dotwright::progress::Watch;
 use dotwright::spectrum::*;
 #[test]
 fn prof() {
-    let o = Outline::disc(pt(0.0, 0.0), 1.0);
+    let o = Outline::disc(pt(0.0, 0.0), 1.0).expect("a disc");
     for (count, a) in [(50, 1e-6), (20, 1e-6), (20, 1e-4)] {
         let mut best: Option<(f64, Timings, usize)> = None;
         for _ in 0..12 {

@@ -173,7 +173,7 @@ impl Border {
         let Cell::Cut(c) = region.cell(i as i64, j as i64) else {
             return;
         };
-        let (low, pen) = (region.low(i, j), beta(lattice.degree) / region.h);
+        let (low, pen) = (region.low(i, j), beta(lattice) / region.h);
         let nf = s.functions.len();
         let q = first[first.len() - 1];
         let mut traces = Traces::new(lattice.degree);
