@@ -6,6 +6,7 @@
 //! that knows a terminal.
 
 mod actions;
+mod answer;
 mod capability;
 mod document;
 mod export;
@@ -29,6 +30,7 @@ mod screen;
 mod sheet;
 mod slip;
 mod state;
+mod stock;
 mod update;
 mod view;
 mod wire;

@@ -61,6 +61,24 @@ pub struct Message {
     pub alarm: bool,
 }
 
+impl Message {
+    /// Something to know.
+    pub fn note(text: impl Into<String>) -> Self {
+        Self {
+            text: text.into(),
+            alarm: false,
+        }
+    }
+
+    /// Something that went wrong.
+    pub fn alarm(text: impl Into<String>) -> Self {
+        Self {
+            text: text.into(),
+            alarm: true,
+        }
+    }
+}
+
 /// An outline laid on cells of one size: shared by all modes drawn at that size.
 #[derive(Debug)]
 pub struct Mount {

@@ -1,15 +1,14 @@
 //! The one place where the state changes.
 
 use super::actions::{Deed, deed_of};
+use super::answer::answer;
 use super::capability::Background;
 use super::document::Scale;
 use super::jobs::{Action, Job};
 use super::keys::Key;
-use super::state::{Message, Mount, Overlay, Picture, Question, Running, Show, State, View};
+use super::state::{Message, Overlay, Question, Running, Show, State, View};
+use super::stock::{remount, taken, wanted_pictures};
 use std::sync::Arc;
-
-/// Pictures kept per mount are worth at most this many dots, some 64 MB.
-const KEPT_DOTS: usize = 12_000_000;
 
 /// Takes in what happened; gives what is to be done.
 pub fn update(state: &mut State, action: Action) -> Vec<Job> {
@@ -65,35 +64,21 @@ pub fn update(state: &mut State, action: Action) -> Vec<Job> {
         Action::Exported(result) => {
             state.exporting = None;
             state.message = Some(match result {
-                Ok(path) => note(format!("written: {}", path.display())),
-                Err(why) => alarm(why),
+                Ok(path) => Message::note(format!("written: {}", path.display())),
+                Err(why) => Message::alarm(why),
             });
             Vec::new()
         }
         Action::Broken(why) => {
             state.solving.running = None;
             state.exporting = None;
-            state.message = Some(alarm(why));
+            state.message = Some(Message::alarm(why));
             Vec::new()
         }
         Action::Leave => {
             state.quit = true;
             Vec::new()
         }
-    }
-}
-
-fn note(text: impl Into<String>) -> Message {
-    Message {
-        text: text.into(),
-        alarm: false,
-    }
-}
-
-fn alarm(text: impl Into<String>) -> Message {
-    Message {
-        text: text.into(),
-        alarm: true,
     }
 }
 
@@ -132,97 +117,10 @@ fn solved(
             wanted_pictures(state)
         }
         Err(why) => {
-            state.message = Some(alarm(why.clone()));
+            state.message = Some(Message::alarm(why.clone()));
             state.solving.failure = Some(why);
             Vec::new()
         }
-    }
-}
-
-/// Lays the outline anew after a change of size.
-fn remount(state: &mut State) {
-    let layout = state.layout();
-    let large = layout.and_then(|l| state.mount(l.plate.width, l.plate.height));
-    let small = state.tiles().and_then(|t| state.mount(t.width, t.height));
-    if large.as_ref().map(|m| m.sight) != state.mount.as_ref().map(|m| m.sight) {
-        state.mount = large.map(Arc::new);
-        state.pictures.clear();
-        state.last = None;
-    }
-    if small.as_ref().map(|m| m.sight) != state.small.as_ref().map(|m| m.sight) {
-        state.small = small.map(Arc::new);
-        state.thumbs.clear();
-    }
-}
-
-fn taken(state: &mut State, generation: u64, mount: &Arc<Mount>, mode: usize, picture: Picture) {
-    if generation != state.solving.generation {
-        return;
-    }
-    let same = |m: &Option<Arc<Mount>>| m.as_ref().is_some_and(|m| Arc::ptr_eq(m, mount));
-    let picture = Arc::new(picture);
-    if same(&state.mount) {
-        if mode == state.chosen {
-            state.last = Some(picture.clone());
-        }
-        let dots = mount.within.len().max(1);
-        if (state.pictures.len() + 1) * dots > KEPT_DOTS {
-            state.pictures.clear();
-        }
-        state.pictures.insert(mode, picture);
-    } else if same(&state.small) {
-        let dots = mount.within.len().max(1);
-        if (state.thumbs.len() + 1) * dots > KEPT_DOTS {
-            state.thumbs.clear();
-        }
-        state.thumbs.insert(mode, picture);
-    }
-}
-
-/// The job for what the view needs and does not have: the chosen mode first, then its neighbours,
-/// so that a step finds its picture ready.
-fn wanted_pictures(state: &mut State) -> Vec<Job> {
-    let Some(spectrum) = state.solving.spectrum.clone() else {
-        return Vec::new();
-    };
-    let count = spectrum.levels.len();
-    let (mount, modes): (_, Vec<usize>) = match state.view {
-        View::Plate => {
-            if let Some(p) = state.pictures.get(&state.chosen) {
-                state.last = Some(p.clone());
-            }
-            let near = [
-                Some(state.chosen),
-                state.chosen.checked_add(1),
-                state.chosen.checked_sub(1),
-            ];
-            let near = near.into_iter().flatten().filter(|m| *m < count);
-            let missing = near.filter(|m| !state.pictures.contains_key(m));
-            (state.mount.clone(), missing.collect())
-        }
-        View::Sheet => {
-            let page = state.tiles().map_or(1, |t| t.page());
-            let first = state.chosen / page * page;
-            let shown = first..(first + page).min(count);
-            let missing = shown.filter(|m| !state.thumbs.contains_key(m));
-            (state.small.clone(), missing.collect())
-        }
-    };
-    let measure = if state.chosen < count && !state.portraits.contains_key(&state.chosen) {
-        vec![state.chosen]
-    } else {
-        Vec::new()
-    };
-    match mount {
-        Some(mount) if !(modes.is_empty() && measure.is_empty()) => vec![Job::Take {
-            generation: state.solving.generation,
-            spectrum,
-            lines: state.lines.clone(),
-            mount,
-            modes,
-            measure,
-        }],
-        _ => Vec::new(),
     }
 }
 
@@ -268,7 +166,7 @@ fn perform(state: &mut State, deed: Deed) -> Vec<Job> {
         Deed::GoTo => ask(state, Question::Level),
         Deed::Temperature => {
             if state.document.scale == Scale::Reduced {
-                state.message = Some(note("a shape without units has no temperature"));
+                state.message = Some(Message::note("a shape without units has no temperature"));
                 return Vec::new();
             }
             ask(state, Question::Temperature)
@@ -354,7 +252,9 @@ fn ask(state: &mut State, question: Question) -> Vec<Job> {
 fn next_glyphs(state: &mut State) {
     let choices = state.capability.choices();
     if choices.len() < 2 {
-        state.message = Some(note("this terminal and locale have plain characters only"));
+        state.message = Some(Message::note(
+            "this terminal and locale have plain characters only",
+        ));
         return;
     }
     let at = choices.iter().position(|g| *g == state.glyphs);
@@ -363,11 +263,11 @@ fn next_glyphs(state: &mut State) {
 
 fn export(state: &mut State) -> Vec<Job> {
     let Some(spectrum) = state.solving.spectrum.clone() else {
-        state.message = Some(note("there is no map yet"));
+        state.message = Some(Message::note("there is no map yet"));
         return Vec::new();
     };
     if state.exporting.is_some() {
-        state.message = Some(note("a picture is being written; one moment"));
+        state.message = Some(Message::note("a picture is being written; one moment"));
         return Vec::new();
     }
     state.exporting = Some(state.now);
@@ -379,62 +279,4 @@ fn export(state: &mut State) -> Vec<Job> {
         nodes: state.nodes,
         folder: state.folder.clone(),
     }]
-}
-
-fn answer(state: &mut State) -> Vec<Job> {
-    let Some(Overlay::Question(question, text)) = state.overlay.take() else {
-        return Vec::new();
-    };
-    let text = text.trim();
-    if text.is_empty() {
-        return Vec::new();
-    }
-    match question {
-        Question::Temperature => match text.trim_end_matches(['K', 'k']).parse::<f64>() {
-            Ok(t) if t.is_finite() && (0.0..=1e4).contains(&t) => state.temperature = t,
-            _ => {
-                state.message = Some(alarm(format!(
-                    "\"{text}\" is no temperature; a number of kelvin from 0 to 10000 is, like 4.2"
-                )));
-            }
-        },
-        Question::Level => return go_to(state, text),
-    }
-    Vec::new()
-}
-
-fn go_to(state: &mut State, text: &str) -> Vec<Job> {
-    let Some(spectrum) = state.solving.spectrum.clone() else {
-        state.message = Some(note("there are no levels yet"));
-        return Vec::new();
-    };
-    let levels = &spectrum.levels;
-    let target = if text.contains('.') {
-        text.parse::<f64>()
-            .ok()
-            .filter(|e| e.is_finite())
-            .and_then(|e| {
-                let far = |k: &usize| (levels[*k].energy - e).abs();
-                (0..levels.len()).min_by(|a, b| far(a).total_cmp(&far(b)))
-            })
-    } else {
-        let number = text.parse::<usize>().ok();
-        number.and_then(|n| levels.iter().position(|l| l.index == n))
-    };
-    match target {
-        Some(k) => {
-            state.chosen = k;
-            wanted_pictures(state)
-        }
-        None => {
-            let (a, b) = (
-                levels.first().map_or(0, |l| l.index),
-                levels.last().map_or(0, |l| l.index),
-            );
-            state.message = Some(alarm(format!(
-                "no level \"{text}\": numbers run from {a} to {b}; with a point it is an energy"
-            )));
-            Vec::new()
-        }
-    }
 }
