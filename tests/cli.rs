@@ -1,6 +1,7 @@
 //! The program as people run it: words in, output, notes and exit codes out.
 #![allow(clippy::unwrap_used)]
 
+use dotwright::units::parse_concise;
 use serde_json::Value;
 use std::fs;
 use std::io::Write;
@@ -522,4 +523,47 @@ fn materials_are_listed_three_ways() {
             .iter()
             .any(|m| m["name"] == "GaAs" && m["mass"] == 0.067)
     );
+}
+
+/// Every command of the README is run in an empty folder beside the shapes.
+#[cfg(unix)]
+#[test]
+fn what_the_readme_shows_can_be_done() {
+    let root = Path::new(env!("CARGO_MANIFEST_DIR"));
+    let folder = tempfile::tempdir().unwrap();
+    std::os::unix::fs::symlink(root.join("shapes"), folder.path().join("shapes")).unwrap();
+    let readme = fs::read_to_string(root.join("README.md")).unwrap();
+    // the level table shown is the one printed: intervals overlap, row by row
+    let table = |text: &str| -> Vec<(f64, f64)> {
+        let rows = text
+            .lines()
+            .filter(|l| l.starts_with("    ") && l.contains('('));
+        let energy = |l: &str| parse_concise(l.split_whitespace().nth(1).unwrap()).unwrap();
+        rows.map(energy).collect()
+    };
+    let shown = table(&readme);
+    let printed = table(&done(&["levels", "shapes/notch-dot.toml", "--modes", "4"]));
+    assert_eq!((shown.len(), printed.len()), (4, 4));
+    for (a, b) in shown.iter().zip(&printed) {
+        assert!((a.0 - b.0).abs() <= a.1 + b.1, "{a:?} against {b:?}");
+    }
+    let mut count = 0;
+    for line in readme.lines().filter_map(|l| l.strip_prefix("$ dotwright")) {
+        let mut words: Vec<&str> = Vec::new();
+        // the only quoting the README needs: parts between double quotes are one word
+        for (k, part) in line.split('"').enumerate() {
+            if k % 2 == 1 {
+                words.push(part);
+            } else {
+                words.extend(part.split_whitespace());
+            }
+        }
+        let output = program(&words).current_dir(folder.path()).output().unwrap();
+        assert_eq!(output.status.code(), Some(0), "{line}: {}", err(&output));
+        count += 1;
+    }
+    assert!(count >= 10, "only {count} commands found");
+    for picture in ["m.png", "slide.png", "sheet.png"] {
+        assert!(folder.path().join(picture).exists(), "{picture}");
+    }
 }
