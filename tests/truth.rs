@@ -54,7 +54,7 @@ fn cases() -> Vec<(&'static str, &'static str, Placed)> {
         (
             "disc",
             "disc_dirichlet.csv",
-            Box::new(|_, t| Outline::disc(pt(t.0, t.1), 1.0)),
+            Box::new(|_, t| Outline::disc(pt(t.0, t.1), 1.0).expect("a disc")),
         ),
         (
             "annulus",

@@ -1,5 +1,6 @@
 //! A gauge on standard error, for jobs that take longer than a blink.
 
+use crate::desk::Capability;
 use crate::progress::{Step, Watch};
 use crate::units::duration;
 use std::io::{self, IsTerminal, Write};
@@ -26,7 +27,7 @@ struct Drawn {
 
 impl Gauge {
     /// A gauge and the watch that drives it; the gauge stays dark when standard error is no
-    /// terminal.
+    /// terminal, or one that cannot wipe a line.
     pub fn start() -> (Self, Watch) {
         let now = Instant::now();
         let drawn = Arc::new(Mutex::new(Drawn {
@@ -34,7 +35,7 @@ impl Gauge {
             stage: ("", now),
             last: None,
         }));
-        let watch = if io::stderr().is_terminal() {
+        let watch = if io::stderr().is_terminal() && Capability::of_environment().screen {
             let shared = Arc::clone(&drawn);
             Watch::listened(move |step| {
                 // a thread that died while drawing leaves a gauge that is only decoration

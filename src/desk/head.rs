@@ -51,7 +51,15 @@ fn status(state: &State) -> Line<'static> {
         return gauge(state, "solving", r);
     }
     if let Some(since) = state.exporting {
-        return gauge(state, "writing the picture", &Running { since, step: None });
+        return gauge(
+            state,
+            "writing the picture",
+            &Running {
+                since,
+                step: None,
+                stage: since,
+            },
+        );
     }
     if state.solving.failure.is_some() {
         return Line::from(Span::styled("no levels", paint.alarm()));
@@ -104,8 +112,12 @@ fn gauge(state: &State, word: &str, running: &Running) -> Line<'static> {
     spans.push(Span::styled(off.repeat(CELLS - full), paint.quiet()));
     spans.push(Span::raw(format!(" {:>3.0} %", 100.0 * part)));
     if part > 0.05 {
-        let left = elapsed.as_secs_f64() * (1.0 - part) / part;
-        spans.push(Span::styled(format!("  {left:.0} s left"), paint.quiet()));
+        let spent = state.now.saturating_sub(running.stage).as_secs_f64();
+        let left = spent * (1.0 - part) / part;
+        if left >= 1.0 {
+            let text = format!("  {left:.0} s left");
+            spans.push(Span::styled(text, paint.quiet()));
+        }
     }
     Line::from(spans)
 }

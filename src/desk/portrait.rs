@@ -85,17 +85,6 @@ fn fine_raster(bounds: Box2) -> Option<Raster> {
     })
 }
 
-/// Area within closed polylines, holes taken off (material on the left of each line).
-pub fn area(lines: &[Vec<Point>]) -> f64 {
-    let twice = |l: &Vec<Point>| -> f64 {
-        let o = l.first().copied().unwrap_or_default();
-        (0..l.len())
-            .map(|k| (l[k] - o).cross(l[(k + 1) % l.len()] - o))
-            .sum()
-    };
-    lines.iter().map(twice).sum::<f64>().abs() / 2.0
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -131,6 +120,5 @@ mod tests {
         assert!((p.spread - spread).abs() < 1e-4, "{} {spread}", p.spread);
         assert!((p.left - 0.5).abs() < 1e-6 && (p.lower - 0.5).abs() < 1e-6);
         assert!((p.centroid.x - 2.5).abs() < 1e-6 && (p.centroid.y - 2.0).abs() < 1e-6);
-        assert!((area(&[corners.to_vec()]) - a * b).abs() < 1e-12);
     }
 }

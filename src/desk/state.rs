@@ -6,7 +6,7 @@ use super::document::Document;
 use super::layout::{Layout, Tiles, divide};
 use super::paint::Paint;
 use super::plate::{Exposure, Look, Sight, Strokes, inside};
-use super::portrait::{Portrait, area};
+use super::portrait::Portrait;
 use crate::geometry::{Box2, Point};
 use crate::progress::Step;
 use crate::spectrum::Spectrum;
@@ -86,8 +86,10 @@ pub struct Picture {
 pub struct Running {
     /// When it began.
     pub since: Duration,
-    /// How far it is.
+    /// How far its present stage is.
     pub step: Option<Step>,
+    /// When that stage began.
+    pub stage: Duration,
 }
 
 /// What is known of the levels.
@@ -170,7 +172,7 @@ impl State {
         let bounds = document.outline.bounds();
         let lines = super::plate::flatten(&document.outline);
         Self {
-            area: area(&lines),
+            area: document.outline.area(),
             lines: Arc::new(lines),
             bounds,
             document: Arc::new(document),

@@ -35,6 +35,9 @@ pub fn update(state: &mut State, action: Action) -> Vec<Job> {
             if generation == state.solving.generation
                 && let Some(r) = &mut state.solving.running
             {
+                if r.step.is_none_or(|s| s.what != step.what) {
+                    r.stage = state.now;
+                }
                 r.step = Some(step);
             }
             Vec::new()
@@ -100,6 +103,7 @@ fn solve(state: &mut State) -> Job {
     state.solving.running = Some(Running {
         since: state.now,
         step: None,
+        stage: state.now,
     });
     Job::Solve {
         generation: state.solving.generation,

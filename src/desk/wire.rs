@@ -110,7 +110,7 @@ impl Pen {
 }
 
 /// The ways to write a symbol, the plain one first.
-fn ways<'a>(symbol: &'a str, wanted: Pen, now: Pen) -> [Option<(&'a str, Pen)>; 2] {
+fn ways(symbol: &str, wanted: Pen, now: Pen) -> [Option<(&str, Pen)>; 2] {
     let same = Some((symbol, wanted));
     let coloured = wanted.ground != Color::Reset && wanted.modifier.is_empty();
     match symbol {

@@ -243,9 +243,8 @@ impl Arrangement {
     /// The pieces of a closed run of directed edges, stretches of one source joined again.
     pub fn pieces(&self, steps: &[(usize, bool)]) -> Vec<Piece> {
         let mut out: Vec<Piece> = Vec::with_capacity(steps.len());
-        // Source, range, direction and end vertices of the stretch that is being put together.
-        let mut open: Option<(usize, (f64, f64), bool, usize, usize)> = None;
-        let mut close = |o: (usize, (f64, f64), bool, usize, usize)| {
+        let mut open: Option<Stretch> = None;
+        let mut close = |o: Stretch| {
             let (source, range, forward, from, to) = o;
             let (from, to) = if forward { (from, to) } else { (to, from) };
             let piece = self.trimmed(&self.sources[source], range, from, to);
@@ -286,20 +285,15 @@ impl Arrangement {
     }
 }
 
+/// A stretch being put together: source, range, direction, the vertices it runs between.
+type Stretch = (usize, (f64, f64), bool, usize, usize);
+
 /// The vertex of a contact: an end point if one is involved, else the point on the curve whose
 /// ends cannot be moved.
 fn contact_vertex(a: &Piece, t: f64, b: &Piece, s: f64, vertices: &mut Vertices) -> usize {
     let is_end = |t: f64| t == 0.0 || t == 1.0;
-    let point = if is_end(t) {
-        a.at(t)
-    } else if is_end(s) {
-        b.at(s)
-    } else if matches!(a, Piece::Line { .. }) {
-        b.at(s)
-    } else {
-        a.at(t)
-    };
-    vertices.weld(point)
+    let on_b = !is_end(t) && (is_end(s) || matches!(a, Piece::Line { .. }));
+    vertices.weld(if on_b { b.at(s) } else { a.at(t) })
 }
 
 /// Points, those nearer than `eps` taken as one.

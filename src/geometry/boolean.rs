@@ -102,6 +102,7 @@ impl Outline {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::{Point, pt};
     use super::super::similarity::Similarity;

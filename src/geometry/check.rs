@@ -70,6 +70,7 @@ impl Outline {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::*;

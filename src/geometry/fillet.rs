@@ -70,7 +70,7 @@ impl Outline {
                 if p.bounds().meets(&b)
                     && meet(arc, p, 1e-10 * size)
                         .iter()
-                        .any(|(t, s)| (0.01..0.99).contains(t) && !on_itself(arc, p, *s))
+                        .any(|(t, _)| (0.01..0.99).contains(t) && !on_itself(arc, p))
                 {
                     return Err(*corner);
                 }
@@ -80,8 +80,8 @@ impl Outline {
     }
 }
 
-/// Whether the contact comes from the arc itself being part of `p`.
-fn on_itself(arc: &Piece, p: &Piece, _s: f64) -> bool {
+/// Whether `p` lies on the circle of the arc, so that contacts are those of the arc with itself.
+fn on_itself(arc: &Piece, p: &Piece) -> bool {
     match (arc, p) {
         (
             Piece::Arc { centre, radius, .. },
@@ -267,6 +267,7 @@ fn scan(a: &Run, b: &Run, by: f64) -> Option<(f64, f64)> {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::super::similarity::Similarity;

@@ -229,6 +229,7 @@ fn chord_strips(part: &Piece, by: f64) -> Vec<Piece> {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::super::similarity::Similarity;

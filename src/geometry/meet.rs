@@ -11,6 +11,9 @@ pub(super) type Contact = (f64, f64);
 /// Ends lying on the other piece come first, exactly at t = 0 or 1. Where the pieces share a
 /// stretch, only its ends are listed.
 pub(super) fn meet(a: &Piece, b: &Piece, eps: f64) -> Vec<Contact> {
+    if circle_misses(a, b, eps) || circle_misses(b, a, eps) {
+        return Vec::new();
+    }
     let mut found = Found {
         a,
         b,
@@ -75,6 +78,16 @@ pub(super) fn meet(a: &Piece, b: &Piece, eps: f64) -> Vec<Contact> {
         _ => search(a, b, eps, |t, s| found.inner(t, s)),
     }
     found.contacts
+}
+
+/// Whether `a` is an arc whose circle stays clear of the box around `b`.
+fn circle_misses(a: &Piece, b: &Piece, eps: f64) -> bool {
+    let Piece::Arc { centre, radius, .. } = a else {
+        return false;
+    };
+    let bounds = b.bounds();
+    let far = (bounds.centre() - *centre).norm() + 0.5 * bounds.diagonal();
+    bounds.distance(*centre) > radius + eps || far < radius - eps
 }
 
 /// 0 or 1 if the point at t is within `eps` of that end.
@@ -252,8 +265,7 @@ fn crossings(a: &Piece, b: &Piece, [lo, hi]: [f64; 2], around: [f64; 2], eps: f6
     let slope = |t: f64| a.tangent(t).dot(b.tangent(foot(t)).left());
     // Only where the foot lies on the piece itself: continued past a cusp, a parallel turns back.
     let (lo, hi) = (onto(&foot, lo, hi, around), onto(&foot, hi, lo, around));
-    let ordered = lo < hi;
-    if !ordered {
+    if lo >= hi {
         return Vec::new();
     }
     let mid = 0.5 * (lo + hi);
@@ -367,6 +379,7 @@ pub(super) fn meeting_boxes(boxes: &[super::point::Box2]) -> Vec<(usize, usize)>
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
     use std::f64::consts::TAU;

@@ -3,6 +3,7 @@
 use super::outline::{Outline, turn_between};
 use super::piece::Piece;
 use super::point::{Box2, Point};
+use std::f64::consts::TAU;
 
 /// A narrow place.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -29,6 +30,8 @@ struct Chord {
     /// The piece it is a chord of, and the middle of its range.
     piece: usize,
     t: f64,
+    /// The chords before and after, unless a corner lies between.
+    next_to: [Option<usize>; 2],
 }
 
 impl Outline {
@@ -43,6 +46,7 @@ impl Outline {
         let mut chords = Vec::new();
         let mut pieces = Vec::new();
         for l in &self.loops {
+            let first = chords.len();
             for p in &l.pieces {
                 let mut ts = p.flatten(2e-4 * size);
                 // Long edges need several shots.
@@ -56,9 +60,20 @@ impl Outline {
                         b: p.at(w[1]),
                         piece: pieces.len(),
                         t: 0.5 * (w[0] + w[1]),
+                        next_to: [None, None],
                     });
                 }
                 pieces.push(p);
+            }
+            let n = chords.len() - first;
+            for k in 0..n {
+                let (this, after) = (first + k, first + (k + 1) % n);
+                let (p, q) = (pieces[chords[this].piece], pieces[chords[after].piece]);
+                let inner = std::ptr::eq(p, q) && chords[this].t < chords[after].t;
+                if inner || turn_between(p, q).abs() < 1e-3 {
+                    chords[this].next_to[1] = Some(after);
+                    chords[after].next_to[0] = Some(this);
+                }
             }
         }
         let grid = ChordGrid::new(&chords, self.bounds());
@@ -90,17 +105,13 @@ impl Outline {
                 grid.hit(chords, (c.a + c.b) * 0.5, normal, k)
             })
             .collect();
-        let n = chords.len();
-        for k in 0..n {
+        for k in 0..chords.len() {
             let Some((width, hit)) = shots[k] else {
                 continue;
             };
-            let neighbour = |j: usize| {
-                (j < n && chords[j].piece == chords[k].piece)
-                    .then(|| shots[j].map_or(f64::INFINITY, |s| s.0))
-            };
             // At the end of an edge only what the corner there tries by itself may be smaller.
-            let (before, after) = (neighbour(k.wrapping_sub(1)), neighbour(k + 1));
+            let neighbour = |j: usize| shots[j].map_or(f64::INFINITY, |s| s.0);
+            let [before, after] = chords[k].next_to.map(|j| j.map(neighbour));
             let slack = 1.0 + 1e-9;
             let (Some(before), Some(after)) = (before, after) else {
                 continue;
@@ -113,14 +124,14 @@ impl Outline {
                 let normal = (c.b - c.a).unit().left() * sign;
                 offer(width, (c.a + c.b) * 0.5 + normal * (0.5 * width));
                 let (a, b) = (pieces[c.piece], pieces[h.piece]);
-                if let Some((p, q)) = closest_approach(a, c.t, b, h.t) {
-                    if (p - q).norm() <= width {
-                        offer((p - q).norm(), (p + q) * 0.5);
-                    }
+                if let Some((p, q)) = closest_approach(a, c.t, b, h.t)
+                    && (p - q).norm() <= width
+                {
+                    offer((p - q).norm(), (p + q) * 0.5);
                 }
             }
         }
-        for (width, at) in self.from_corners(sign) {
+        for (width, at) in self.corner_gaps(sign) {
             offer(width, at);
         }
         best
@@ -128,7 +139,7 @@ impl Outline {
 
     /// Shortest ways from every corner that points into the space looked at, to any wall they
     /// meet squarely or to another such corner.
-    fn from_corners(&self, sign: f64) -> Vec<(f64, Point)> {
+    fn corner_gaps(&self, sign: f64) -> Vec<(f64, Point)> {
         let mut corners = Vec::new();
         for l in &self.loops {
             let n = l.pieces.len();
@@ -193,7 +204,7 @@ fn closest_approach(a: &Piece, mut t: f64, b: &Piece, mut s: f64) -> Option<(Poi
         }
         t -= dt;
         s -= ds;
-        if !(0.0..=1.0).contains(&t) || !(0.0..=1.0).contains(&s) {
+        if !on_piece(a, t) || !on_piece(b, s) {
             return None;
         }
         if dt.abs().max(ds.abs()) < 1e-14 {
@@ -201,6 +212,16 @@ fn closest_approach(a: &Piece, mut t: f64, b: &Piece, mut s: f64) -> Option<(Poi
         }
     }
     Some((a.at(t), b.at(s)))
+}
+
+/// Whether t lies on the piece; a whole circle goes on beyond its seam.
+fn on_piece(p: &Piece, t: f64) -> bool {
+    let whole = match p {
+        Piece::Arc { sweep, .. } | Piece::Ellipse { sweep, .. } => sweep.abs() > TAU - 1e-9,
+        _ => false,
+    };
+    let beyond = if whole { 0.5 } else { 1e-9 };
+    (-beyond..=1.0 + beyond).contains(&t)
 }
 
 /// Chords by the cells of a square grid they touch.
@@ -316,6 +337,7 @@ impl ChordGrid {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::*;

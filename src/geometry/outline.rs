@@ -94,6 +94,7 @@ pub(super) fn turn_between(before: &Piece, after: &Piece) -> f64 {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::*;

@@ -270,6 +270,7 @@ pub(super) fn periodic_hits(value: f64, period: f64, start: f64, sweep: f64) -> 
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
 

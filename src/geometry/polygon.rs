@@ -81,10 +81,10 @@ fn refuse_crossings(v: &[Point], eps: f64) -> Result<(), GeometryError> {
         } else {
             crossing(v[i], end(i), v[j], end(j), eps)
         };
-        if let Some(at) = found {
-            if worst.is_none_or(|w| (i, j) < (w.0, w.1)) {
-                worst = Some((i, j, at));
-            }
+        if let Some(at) = found
+            && worst.is_none_or(|w| (i, j) < (w.0, w.1))
+        {
+            worst = Some((i, j, at));
         }
     }
     match worst {
@@ -112,6 +112,7 @@ fn crossing(a: Point, b: Point, c: Point, d: Point, eps: f64) -> Option<Point> {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::*;

@@ -69,6 +69,7 @@ fn matching_area(p: &Piece, tolerance: f64) -> Vec<Point> {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::*;

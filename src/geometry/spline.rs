@@ -108,6 +108,7 @@ fn slopes(p: &[Point], h: &[f64]) -> Vec<Point> {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::super::point::pt;
     use super::*;

@@ -71,25 +71,28 @@ impl Outline {
             .collect();
         let angle = |p: &Point| (*p - centre).angle();
         let first = angle(&class[0]);
-        let mut turns = Vec::new();
-        for p in &class {
-            let axis = (0.5 * (angle(p) + first)).rem_euclid(PI);
-            let axis = if PI - axis < 1e-9 { 0.0 } else { axis };
-            if self.is_kept(&Similarity::mirrored(centre, axis), &samples, size) {
-                out.mirrors.push(axis);
-            }
-            let turn = (angle(p) - first).rem_euclid(TAU);
-            if turn > 1e-6
-                && turn < TAU - 1e-6
-                && self.is_kept(&Similarity::turned(centre, turn), &samples, size)
-            {
-                turns.push(turn);
-            }
-        }
-        out.mirrors.sort_by(f64::total_cmp);
-        out.mirrors.dedup_by(|a, b| (*a - *b).abs() < 1e-6);
-        if let Some(least) = turns.into_iter().reduce(f64::min) {
+        // The least turn that fits generates all rotations; one mirror then gives all mirrors.
+        let mut turns: Vec<f64> = class
+            .iter()
+            .map(|p| (angle(p) - first).rem_euclid(TAU))
+            .filter(|turn| (1e-6..TAU - 1e-6).contains(turn))
+            .collect();
+        turns.sort_by(f64::total_cmp);
+        let least = turns
+            .into_iter()
+            .find(|turn| self.is_kept(&Similarity::turned(centre, *turn), &samples, size));
+        if let Some(least) = least {
             out.rotation = (TAU / least).round() as usize;
+        }
+        let axis = class
+            .iter()
+            .map(|p| 0.5 * (angle(p) + first))
+            .find(|axis| self.is_kept(&Similarity::mirrored(centre, *axis), &samples, size));
+        if let Some(axis) = axis {
+            let step = PI / out.rotation as f64;
+            let base = axis.rem_euclid(step);
+            let base = if step - base < 1e-9 { 0.0 } else { base };
+            out.mirrors = (0..out.rotation).map(|k| base + k as f64 * step).collect();
         }
         out
     }
@@ -118,10 +121,9 @@ impl Outline {
                 if a.cross(b).abs() > 1e-7 || a.dot(b) < 0.0 || bend > 1e-5 {
                     out.push(p.end());
                 }
-                if let Piece::Arc { centre: c, .. } = p {
-                    if (*c - centre).norm() <= SAME * size {
-                        continue;
-                    }
+                if matches!(p, Piece::Arc { centre: c, .. } if (*c - centre).norm() <= SAME * size)
+                {
+                    continue;
                 }
                 let slope = |t: f64| (p.at(t) - centre).dot(p.tangent(t));
                 stationary(&slope, |t| out.push(p.at(t)));
@@ -185,6 +187,7 @@ fn smallest_class(marks: &[Point], centre: Point, size: f64) -> Option<Vec<Point
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
     use std::f64::consts::FRAC_PI_4;

@@ -166,13 +166,16 @@ fn joined(a: &Piece, b: &Piece, same: f64) -> Option<Piece> {
                 sweep: more,
             },
         ) => {
-            let angle = (s - start - sweep + PI_HALF_TURNS) % TAU;
+            let angle = (s - start - sweep + WHOLE_TURNS) % TAU;
             let follows = angle.min(TAU - angle) < 1e-9;
             let alike = (*centre - *c).norm() <= same
                 && (*half_axes - *h).norm() <= same
                 && (t - turn).abs() * half_axes.norm() <= same;
             let sum = whole_turn(sweep + more);
-            (alike && follows && sweep * more > 0.0 && sum.abs() <= TAU).then(|| Piece::Ellipse {
+            if !alike || !follows || sweep * more <= 0.0 || sum.abs() > TAU {
+                return None;
+            }
+            Some(Piece::Ellipse {
                 centre: *centre,
                 half_axes: *half_axes,
                 turn: *turn,
@@ -185,7 +188,7 @@ fn joined(a: &Piece, b: &Piece, same: f64) -> Option<Piece> {
 }
 
 /// Enough whole turns to make any angle that occurs positive.
-const PI_HALF_TURNS: f64 = 64.0 * TAU;
+const WHOLE_TURNS: f64 = 64.0 * TAU;
 
 /// A sweep that misses a whole turn by roundoff is a whole turn.
 fn whole_turn(sweep: f64) -> f64 {

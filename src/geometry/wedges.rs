@@ -74,7 +74,7 @@ fn wedge(arrangement: &Arrangement, steps: &[Step], i: usize, o: usize) -> (f64,
     let angle = (inc - out).rem_euclid(TAU);
     // Rounded to steps that hide the roundoff of tangents, so that curvatures decide.
     let coarse = (angle / 1e-7).round() * 1e-7;
-    if coarse < 1e-7 || coarse > TAU - 2e-7 {
+    if !(1e-7..=TAU - 2e-7).contains(&coarse) {
         return (if bend >= 0.0 { 0.0 } else { TAU }, bend);
     }
     (coarse, bend)

@@ -47,6 +47,8 @@ pub struct Lattice {
     pub unknowns: usize,
     /// The cells that are split.
     pub splits: Splits,
+    /// Factor on the penalty of walls and faces; above 1 where the form was not coercive.
+    pub stiffening: f64,
     /// Cut cells left without functions of their own: thin ends below the deepest lattice.
     pub dropped: usize,
 }
@@ -133,6 +135,7 @@ impl Lattice {
                 unknowns,
                 splits,
                 dropped,
+                stiffening: 1.0,
             });
         }
     }

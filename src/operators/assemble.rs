@@ -4,7 +4,7 @@ use super::band::Band;
 use super::cell::{Element, Kernel};
 use super::glue::glue;
 use super::tables::Tables;
-use super::wall::{Traces, add_wall, symmetrise};
+use super::wall::{Traces, add_wall, beta, symmetrise};
 use crate::lattice::{Lattice, Role, Space};
 use crate::progress::{Cancelled, Watch};
 
@@ -56,6 +56,7 @@ fn fill(lattice: &Lattice, n: usize, t: &Tables) -> [Band; 2] {
         stiff.add(c[0] as usize, c[1] as usize, &whole.stiffness);
         mass.add(c[0] as usize, c[1] as usize, &whole.mass);
     }
+    let pen = beta(lattice) / region.h;
     let mut kernel = Kernel::new(t);
     let mut element = Element::zeros(t.p);
     let mut traces = Traces::new(t.p);
@@ -65,14 +66,7 @@ fn fill(lattice: &Lattice, n: usize, t: &Tables) -> [Band; 2] {
         kernel.element(&c.weights, region.h, &mut element);
         block.fill(0.0);
         let low = region.low(c.i, c.j);
-        add_wall(
-            &mut block,
-            &mut traces,
-            &lattice.trace.pieces,
-            &c.parts,
-            low,
-            region.h,
-        );
+        add_wall(&mut block, &mut traces, &lattice.trace.pieces, &c.parts, low, region.h, pen);
         symmetrise(&mut block, b);
         for (e, w) in element.stiffness.iter_mut().zip(&block) {
             *e += w;

@@ -173,7 +173,7 @@ impl Border {
         let Cell::Cut(c) = region.cell(i as i64, j as i64) else {
             return;
         };
-        let (low, pen) = (region.low(i, j), beta(lattice.degree) / region.h);
+        let (low, pen) = (region.low(i, j), beta(lattice) / region.h);
         let nf = s.functions.len();
         let q = first[first.len() - 1];
         let mut traces = Traces::new(lattice.degree);
@@ -221,8 +221,8 @@ impl Border {
         for &c in &s.cloud.corners {
             let c = &self.corners[c as usize];
             let e = ends(c);
-            // a corner's own functions vanish on its own straight edges
-            needed |= !(straight && (e[0] || e[1]));
+            // functions of a corner with straight edges vanish on these
+            needed |= c.curved || !(straight && (e[0] || e[1]));
             for k in 0..2 {
                 let near = c.distance(part.ends[0]).min(c.distance(part.ends[1])) < 3.0 * h;
                 at[k] |= e[k] && near;

@@ -22,7 +22,7 @@ pub fn glue(lattice: &Lattice, face: &Face, traces: &mut [Traces; 2]) -> Glued {
     let p = lattice.degree;
     let b = (p + 1) * (p + 1);
     let r = face.regions.map(|n| &lattice.regions[n]);
-    let inverse = [0, 1].map(|s| r[s].h / beta(p));
+    let inverse = [0, 1].map(|s| r[s].h / beta(lattice));
     let sum = inverse[0] + inverse[1];
     let gamma = inverse.map(|x| x / sum);
     let pen = 2.0 / sum;

@@ -242,7 +242,7 @@ impl Work {
                     }
                 }
                 for (o, u) in out.iter_mut().zip(u.iter()) {
-                    *o += WALL * beta(p) * q.weight / r.h * u * u;
+                    *o += WALL * beta(lattice) * q.weight / r.h * u * u;
                 }
             }
         }

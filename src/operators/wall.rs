@@ -1,15 +1,15 @@
 //! The hard wall by symmetric Nitsche: −∫(∂ₙu)v − ∫u(∂ₙv) + (β/h)∫uv (Nitsche 1971).
 
 use crate::geometry::{Piece, Point};
-use crate::lattice::{Part, gauss, spline};
+use crate::lattice::{Lattice, Part, gauss, spline};
 
 /// β by degree 0…7. For 2…5 the smallest coercive values over random placements were measured as
 /// 6.9, 12.3, 19.5, 27.4; these keep a factor 1.6.
 const BETA: [f64; 8] = [2.0, 6.0, 12.0, 20.0, 32.0, 45.0, 60.0, 80.0];
 
-/// The penalty β of a degree.
-pub fn beta(p: usize) -> f64 {
-    BETA[p.min(7)]
+/// The penalty β of a lattice.
+pub fn beta(lattice: &Lattice) -> f64 {
+    lattice.stiffening * BETA[lattice.degree.min(7)]
 }
 
 /// A point of a wall rule.
@@ -123,7 +123,7 @@ impl Traces {
     }
 }
 
-/// Adds the wall terms of one cell to its stiffness block.
+/// Adds the wall terms of one cell to its stiffness block, with penalty `pen` = β/h.
 pub fn add_wall(
     block: &mut [f64],
     traces: &mut Traces,
@@ -131,10 +131,10 @@ pub fn add_wall(
     parts: &[Part],
     low: [f64; 2],
     h: f64,
+    pen: f64,
 ) {
     let p = traces.p;
     let b = (p + 1) * (p + 1);
-    let pen = beta(p) / h;
     let mut lower = vec![0.0; b];
     for part in parts {
         for q in points(

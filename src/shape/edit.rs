@@ -1,8 +1,9 @@
 //! Changes to single values of a document's text that leave everything else as it was written.
 
+use super::kinds::KINDS;
 use super::near;
+use super::placing::PLACING;
 use super::read::{FINISH, MATERIAL, SOLVE};
-use super::steps::{KINDS, PLACING};
 use toml_edit::{DocumentMut, Item, Table, TableLike, Value};
 
 /// What is wrong, and what would be right.

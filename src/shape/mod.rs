@@ -4,6 +4,7 @@
 //! sizes, its outline and its solver settings; edits that keep comments. This room knows no
 //! lattices and no energies.
 
+mod arithmetic;
 mod build;
 mod demo;
 mod document;
@@ -11,13 +12,16 @@ mod edit;
 mod expression;
 mod fault;
 mod figure;
+mod kinds;
 mod materials;
 mod model;
 mod near;
+mod placing;
 mod read;
 mod reader;
 mod sizes;
 mod steps;
+mod values;
 
 pub use build::ShapeOutline;
 pub use demo::demo;

@@ -7,7 +7,7 @@ use super::{SpectrumError, Timings};
 use crate::eigen::{self, Factor, Found, Problem, Settings, Window};
 use crate::geometry::Outline;
 use crate::lattice::{CornerSpace, Lattice, Plan};
-use crate::operators::{Functions, Residual, assemble, border, residual};
+use crate::operators::{self, Border, Functions, Pair, Residual, assemble, residual};
 use crate::progress::Watch;
 use std::time::Instant;
 
@@ -31,6 +31,8 @@ pub struct Attempt {
     pub asymmetry: f64,
 }
 
+/// The penalty is raised up to this factor where the form is not coercive.
+const STIFFEST: f64 = 30.0;
 /// Above this the quadrature of the corner functions is not to be trusted.
 pub const ASYMMETRY: f64 = 1e-8;
 /// Largest factor, bytes.
@@ -49,31 +51,24 @@ impl Attempt {
         watch: &Watch,
     ) -> Result<Self, SpectrumError> {
         let clock = Instant::now();
-        let lattice = Lattice::new(outline, plan.grid, plan.degree, &plan.splits)?;
-        timings.lattice += ms(clock);
-        let clock = Instant::now();
-        let pair = assemble(&lattice, watch)?;
-        let border = border(&lattice, plan.corners);
+        let mut lattice = Lattice::new(outline, plan.grid, plan.degree, &plan.splits)?;
         let places = lattice.places();
-        timings.operators += ms(clock);
-        let clock = Instant::now();
-        let tail = if border.is_empty() {
-            Tail::default()
-        } else {
-            let k = sprs::CsMat::new(
-                (pair.len(), pair.len()),
-                pair.starts.clone(),
-                pair.columns.clone(),
-                pair.stiffness.clone(),
-            );
-            let plan = eigen::Plan::new(&k, &places, 0, MEMORY)?;
-            let mut factor = Factor::new(&plan, &k, None)?;
-            Tail::new(&pair, &border, |b, count| {
-                factor.solve(b, count);
-                Ok(())
-            })?
-        };
-        timings.factor += ms(clock);
+        timings.lattice += ms(clock);
+        let (mut pair, mut border, mut tail);
+        loop {
+            let clock = Instant::now();
+            pair = assemble(&lattice, watch)?;
+            border = operators::border(&lattice, plan.corners.clone());
+            timings.operators += ms(clock);
+            let clock = Instant::now();
+            let coercive;
+            (coercive, tail) = prepare(&pair, &border, &places)?;
+            timings.factor += ms(clock);
+            if coercive || lattice.stiffening > STIFFEST {
+                break;
+            }
+            lattice.stiffening *= 2.0;
+        }
         let clock = Instant::now();
         let system = System::new(pair, &tail, places);
         timings.operators += ms(clock);
@@ -111,6 +106,31 @@ impl Attempt {
             bars,
         })
     }
+}
+
+/// Whether the stiffness is positive definite, and the corner functions made orthogonal by it.
+fn prepare(
+    pair: &Pair,
+    border: &Border,
+    places: &[[f64; 2]],
+) -> Result<(bool, Tail), SpectrumError> {
+    let shape = (pair.len(), pair.len());
+    let k = sprs::CsMat::new(
+        shape,
+        pair.starts.clone(),
+        pair.columns.clone(),
+        pair.stiffness.clone(),
+    );
+    let plan = eigen::Plan::new(&k, places, 0, MEMORY)?;
+    let mut factor = Factor::new(&plan, &k, None)?;
+    if factor.negative > 0 {
+        return Ok((false, Tail::default()));
+    }
+    let tail = Tail::new(pair, border, |b, count| {
+        factor.solve(b, count);
+        Ok(())
+    })?;
+    Ok((true, tail))
 }
 
 fn ms(since: Instant) -> f64 {

@@ -3,6 +3,7 @@
 use super::attempt::Attempt;
 use crate::lattice::{DEEPEST, Key};
 use std::cmp::Ordering;
+use std::collections::HashSet;
 
 /// The next step.
 #[derive(Clone, Debug, PartialEq)]
@@ -47,10 +48,19 @@ pub fn next(attempt: &Attempt, accuracy: f64) -> Next {
             wanted[c] = true;
         }
     }
-    let few: Vec<Key> = (0..r.cells.len())
+    let marked: Vec<Key> = (0..r.cells.len())
         .filter(|&c| wanted[c] && r.cells[c].level < DEEPEST)
         .map(|c| r.cells[c])
         .collect();
+    // with their neighbours: a strip of cut cells alone has too few inside cells to lean on
+    let known: HashSet<Key> = r.cells.iter().copied().collect();
+    let mut few: Vec<Key> = marked
+        .iter()
+        .flat_map(|k| (-1..=1).flat_map(move |i| (-1..=1).map(move |j| k.beside(i, j))))
+        .filter(|k| known.contains(k))
+        .collect();
+    few.sort_unstable();
+    few.dedup();
     if few.len() as f64 > SPREAD_OUT * r.cells.len() as f64 || few.is_empty() {
         let p = attempt.lattice.degree as f64;
         Next::Finer((0.7 / worst).powf(0.5 / p).clamp(0.4, 0.93))

@@ -74,7 +74,7 @@ impl System {
     /// The functions behind eigenvectors.
     pub fn functions(&self, lattice: &Lattice, tail: &Tail, vectors: &[Vec<f64>]) -> Functions {
         let (n, q, count) = (self.scale.len(), self.tail, vectors.len());
-        let raw = if q == 0 { 0 } else { tail.raw.len() / q };
+        let raw = tail.raw_count;
         let mut corners = vec![0.0; raw * count];
         let mut unknowns = vec![0.0; n * count];
         for (l, y) in vectors.iter().enumerate() {

@@ -20,6 +20,8 @@ pub struct Tail {
     pub splines: Vec<Vec<f64>>,
     /// Each function in terms of the raw ones: `[raw * len + function]`.
     pub raw: Vec<f64>,
+    /// Number of raw functions.
+    pub raw_count: usize,
 }
 
 impl Tail {
@@ -120,6 +122,7 @@ impl Tail {
                 raw: (0..q * w)
                     .map(|e| d[e / w] * t[(e % w) * q + e / w])
                     .collect(),
+                raw_count: q,
             });
         }
     }

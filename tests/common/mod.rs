@@ -83,7 +83,7 @@ pub fn placed(vertices: &[(f64, f64)], angle: f64, by: (f64, f64)) -> Outline {
         .iter()
         .map(|&(x, y)| pt(c * x - s * y + by.0, s * x + c * y + by.1))
         .collect();
-    Outline::polygon(&v)
+    Outline::polygon(&v).expect("a simple polygon")
 }
 
 /// A piece that is not straight, for tests that care.

@@ -26,8 +26,9 @@ impl Sight {
             return None;
         }
         let dot_aspect = aspect / 2.0;
-        // one dot stays free on each side, so that the outline is never cut
-        let (w, h) = ((2 * columns - 2) as f64, (4 * rows - 2) as f64);
+        // the outermost points fall on the middle of the last dot but one: never cut, and never
+        // between two dots, where a hair's breadth would decide
+        let (w, h) = ((2 * columns - 3) as f64, (4 * rows - 3) as f64);
         let wide = (size.x / w).max(size.y / (h * dot_aspect));
         let dot = Point {
             x: wide,

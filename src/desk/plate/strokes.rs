@@ -40,18 +40,10 @@ struct Lean {
 impl Strokes {
     /// Closed polylines.
     pub fn outline(lines: &[Vec<Point>], sight: &Sight) -> Self {
-        let (w, h) = sight.dots();
         let mut pen = Pen::new(sight);
-        for line in lines {
-            for (k, &a) in line.iter().enumerate() {
-                let (p, q) = (sight.place(a), sight.place(line[(k + 1) % line.len()]));
-                let near = |c: (f64, f64)| {
-                    c.0 > -9e3 && c.1 > -9e3 && c.0 < w as f64 + 9e3 && c.1 < h as f64 + 9e3
-                };
-                if near(p) && near(q) {
-                    pen.line(p, q);
-                }
-            }
+        for line in lines.iter().filter(|l| !l.is_empty()) {
+            let places: Vec<_> = line.iter().map(|p| sight.place(*p)).collect();
+            pen.closed(&places);
         }
         pen.lift()
     }
@@ -98,39 +90,68 @@ impl Pen {
         }
     }
 
-    /// A straight line between places in dots: one dot for each column, or each row where it is
-    /// steeper, at the middle of that column or row.
-    fn line(&mut self, p: (f64, f64), q: (f64, f64)) {
-        let (dx, dy) = (q.0 - p.0, q.1 - p.1);
+    /// A closed line through places in dots.
+    fn closed(&mut self, places: &[(f64, f64)]) {
+        let n = places.len();
+        let mut last = None;
+        // the first edge comes twice, to join the end of the line to its start
+        for k in 0..=n {
+            let (p, q) = (places[k % n], places[(k + 1) % n]);
+            self.edge(p, q, &mut last);
+            if k < n {
+                self.lean_along(p, q);
+            }
+        }
+    }
+
+    /// One dot for each column, or each row where the edge is steeper, at the middle of that
+    /// column or row; and one at the start where the dot before would not touch.
+    fn edge(&mut self, p: (f64, f64), q: (f64, f64), last: &mut Option<(f64, f64)>) {
         // edges that fall between two dots go to the same one all along, whatever the rounding
         const HAIR: f64 = 1e-6;
         let (p, q) = ((p.0 + HAIR, p.1 + HAIR), (q.0 + HAIR, q.1 + HAIR));
+        let (dx, dy) = (q.0 - p.0, q.1 - p.1);
         let flat = dx.abs() >= dy.abs();
         let (from, to) = if flat { (p.0, q.0) } else { (p.1, q.1) };
-        let (first, last) = ((from.min(to) - 0.5).ceil(), (from.max(to) - 0.5).floor());
-        let mut at = first + 0.5;
-        while at <= last + 0.5 {
+        let (low, high) = ((from.min(to) - 0.5).ceil(), (from.max(to) - 0.5).floor());
+        let count = (high - low + 1.0).max(0.0) as usize;
+        for k in 0..count {
+            let at = 0.5
+                + if to > from {
+                    low + k as f64
+                } else {
+                    high - k as f64
+                };
             let t = (at - from) / (to - from);
-            if flat {
-                self.dot(at, p.1 + t * dy);
+            let here = if flat {
+                (at, p.1 + t * dy)
             } else {
-                self.dot(p.0 + t * dx, at);
+                (p.0 + t * dx, at)
+            };
+            let apart = |l: &(f64, f64)| {
+                let step = |a: f64, b: f64| (a.floor() - b.floor()).abs();
+                step(l.0, here.0).max(step(l.1, here.1)) > 1.0
+            };
+            if last.as_ref().is_some_and(apart) {
+                self.dot(p.0, p.1);
             }
-            at += 1.0;
+            self.dot(here.0, here.1);
+            *last = Some(here);
         }
         // straight edges keep their ends, so that corners stay sharp
         if dx.hypot(dy) > 3.0 {
             self.dot(p.0, p.1);
             self.dot(q.0, q.1);
         }
-        let steps = (dx.abs().max(dy.abs()).ceil() as usize).max(1);
-        let pieces = 2 * steps;
+    }
+
+    fn lean_along(&mut self, p: (f64, f64), q: (f64, f64)) {
+        let (dx, dy) = (q.0 - p.0, q.1 - p.1);
+        let pieces = 2 * (dx.abs().max(dy.abs()).ceil() as usize).max(1);
+        let piece = (dx / pieces as f64, dy / pieces as f64);
         for k in 0..pieces {
             let t = (k as f64 + 0.5) / pieces as f64;
-            self.lean(
-                (p.0 + t * dx, p.1 + t * dy),
-                (dx / pieces as f64, dy / pieces as f64),
-            );
+            self.lean((p.0 + t * dx, p.1 + t * dy), piece);
         }
     }
 
@@ -218,4 +239,52 @@ fn letter(l: &Lean) -> Option<char> {
         _ if angle > 0.0 => '\\',
         _ => '/',
     })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn ring(sight: &Sight, turn: f64, sides: usize) -> Vec<Vec<Point>> {
+        let r = 0.3 * sight.cell() * sight.columns as f64;
+        let step = std::f64::consts::TAU / sides as f64;
+        let at = |k: usize| Point::polar(turn + k as f64 * step) * r;
+        vec![(0..sides).map(at).collect()]
+    }
+
+    #[test]
+    fn closed_lines_have_no_gaps() {
+        let at = |x, y| Point { x, y };
+        let bounds = crate::geometry::Box2 {
+            lo: at(-1.0, -1.0),
+            hi: at(1.0, 1.0),
+        };
+        let sight = Sight::fit(bounds, 40, 20, 2.0).expect("there is room");
+        let (w, h) = sight.dots();
+        for (sides, turn) in [
+            (3, 0.1),
+            (4, 0.0),
+            (4, 0.3),
+            (5, 0.7),
+            (60, 0.0),
+            (400, 0.2),
+        ] {
+            let strokes = Strokes::outline(&ring(&sight, turn, sides), &sight);
+            let on = |i: usize, j: usize| {
+                i < w && j < h && strokes.dots[(j / 4) * sight.columns + i / 2] & bit(i, j) != 0
+            };
+            // what can be reached from outside without crossing a dot must leave the middle out
+            let mut seen = vec![false; w * h];
+            let mut open = vec![(0usize, 0usize)];
+            while let Some((i, j)) = open.pop() {
+                if i >= w || j >= h || seen[j * w + i] || on(i, j) {
+                    continue;
+                }
+                seen[j * w + i] = true;
+                let (left, up) = (i.wrapping_sub(1), j.wrapping_sub(1));
+                open.extend([(i + 1, j), (left, j), (i, j + 1), (i, up)]);
+            }
+            assert!(!seen[(h / 2) * w + w / 2], "{sides} sides turned by {turn}");
+        }
+    }
 }
