@@ -189,11 +189,7 @@ mod example {
     pub fn box_modes() -> Modes {
         let p = |x, y| Point { x, y };
         let outline =
-<<<<<<< HEAD
             Outline::polygon(&[p(1., 1.), p(4., 1.), p(4., 3.), p(1., 3.)]).expect("a box");
-=======
-            Outline::polygon(&[p(1., 1.), p(4., 1.), p(4., 3.), p(1., 3.)]).expect("a rectangle");
->>>>>>> main
         let wanted = Wanted {
             count: 4,
             ..Wanted::default()

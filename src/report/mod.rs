@@ -50,13 +50,8 @@ mod example {
 
     pub fn spectrum(count: usize) -> Spectrum {
         let p = |x, y| Point { x, y };
-<<<<<<< HEAD
         let square = Outline::polygon(&[p(0., 0.), p(60., 0.), p(60., 60.), p(0., 60.)]);
         let square = square.expect("a square");
-=======
-        let square =
-            Outline::polygon(&[p(0., 0.), p(60., 0.), p(60., 60.), p(0., 60.)]).expect("a square");
->>>>>>> main
         let wanted = Wanted {
             count,
             ..Wanted::default()
