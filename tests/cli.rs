@@ -567,3 +567,44 @@ fn what_the_readme_shows_can_be_done() {
         assert!(folder.path().join(picture).exists(), "{picture}");
     }
 }
+
+/// The set of signals a process catches, as Linux tells it.
+#[cfg(target_os = "linux")]
+fn catches(process: u32, signal: u32) -> bool {
+    let status = fs::read_to_string(format!("/proc/{process}/status")).unwrap_or_default();
+    let set = status.lines().find_map(|l| l.strip_prefix("SigCgt:"));
+    let set = set.and_then(|s| u64::from_str_radix(s.trim(), 16).ok());
+    set.is_some_and(|s| s >> (signal - 1) & 1 == 1)
+}
+
+#[cfg(target_os = "linux")]
+#[test]
+fn a_signal_calls_a_long_solve_off() {
+    let folder = tempfile::tempdir().unwrap();
+    let picture = folder.path().join("m.png");
+    for (name, number) in [("-INT", 2), ("-TERM", 15)] {
+        let mut child = program(&["sheet", "shapes/unit-disc.toml", "--modes", "3000", "-o"])
+            .arg(&picture)
+            .stdout(Stdio::piped())
+            .stderr(Stdio::piped())
+            .spawn()
+            .unwrap();
+        let id = child.id();
+        while !catches(id, number) {
+            assert!(child.try_wait().unwrap().is_none(), "over before it began");
+            std::thread::yield_now();
+        }
+        let sent = Command::new("kill").args([name, &id.to_string()]).status();
+        assert!(sent.unwrap().success());
+        let output = child.wait_with_output().unwrap();
+        assert_eq!(
+            output.status.code(),
+            Some(128 + number as i32),
+            "{}",
+            err(&output)
+        );
+        assert!(err(&output).contains("called off"), "{}", err(&output));
+        assert_eq!(out(&output), "");
+        assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 0);
+    }
+}
