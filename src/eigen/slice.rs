@@ -1,0 +1,360 @@
+//! One slice of the spectrum: shift, Lanczos, count, and again until the count agrees.
+
+use super::certificate::{self, Bound, End, Verdict, compare};
+use super::factor::Factor;
+use super::field::Field;
+use super::lanczos::{Estimate, Lanczos, Locked};
+use super::panel::Panel;
+use super::pencil::Pencil;
+use super::{EigenError, window};
+use crate::progress::Watch;
+use crate::units::Scalar;
+use std::time::Instant;
+
+/// A level in elimination order.
+#[derive(Debug, Clone)]
+pub(super) struct Level<T> {
+    pub value: f64,
+    pub residual: f64,
+    pub vector: Vec<T>,
+}
+
+/// A slice, certified or not.
+pub(super) struct Slice<T> {
+    /// Ascending, all below `upper`.
+    pub levels: Vec<Level<T>>,
+    pub upper: Bound,
+    pub complete: bool,
+    /// Worst backward error of the counts.
+    pub backward: f64,
+}
+
+/// What is wanted of a slice.
+pub(super) struct Task<'a, T: Field, const B: usize> {
+    pub lower: Bound,
+    pub want: usize,
+    /// Expected value of the last level.
+    pub top: f64,
+    pub tolerance: f64,
+    pub cluster: f64,
+    /// Most columns of the Lanczos basis.
+    pub columns: usize,
+    /// Levels known already, to stay orthogonal to.
+    pub known: Locked<T, B>,
+    pub start: Option<Panel<T, B>>,
+    pub watch: &'a Watch,
+    /// Levels done before this slice, and in all, for the progress.
+    pub done: (usize, usize),
+}
+
+/// Time and solves spent.
+#[derive(Default)]
+pub(super) struct Spent {
+    pub solves: usize,
+    pub factor_ms: f64,
+}
+
+/// Rounds of new blocks when the count says that levels are missing; each finds up to a block of
+/// copies of every level.
+const ROUNDS: usize = 64;
+
+pub(super) fn slice<T: Field, const B: usize>(
+    factor: &mut Factor<'_, T>,
+    pencil: &Pencil<'_, T>,
+    mut task: Task<'_, T, B>,
+    spent: &mut Spent,
+) -> Result<Slice<T>, EigenError> {
+    let n = pencil.pattern.size();
+    let clock = Instant::now();
+    window::settle(factor, pencil, task.lower, task.want, task.top)?;
+    spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
+
+    let (mut levels, end) = search(factor, pencil, &mut task, spent)?;
+    let clock = Instant::now();
+    factor.at(pencil, end.shift)?;
+    spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
+    let mut upper = Bound { value: factor.shift, below: factor.below };
+    let mut backward = factor.backward;
+    let mut verdict = compare(task.lower, upper, levels.iter().map(|l| l.value));
+    for round in 0..ROUNDS {
+        match verdict {
+            Verdict::Whole => break,
+            Verdict::Missing(missing) => {
+                let found = repair(factor, pencil, &mut task, &levels, upper, missing, round, spent)?;
+                if found.is_empty() {
+                    break;
+                }
+                levels.extend(found);
+            }
+            Verdict::Surplus(_) => {
+                // The count may be the one that erred: count again a little lower in the gap.
+                if round > 2 {
+                    break;
+                }
+                let last = levels.iter().map(|l| l.value).filter(|&x| x < upper.value);
+                let last = last.fold(f64::NEG_INFINITY, f64::max);
+                factor.at(pencil, last + 0.6 * (upper.value - last))?;
+                upper = Bound { value: factor.shift, below: factor.below };
+                backward = backward.max(factor.backward);
+            }
+        }
+        verdict = compare(task.lower, upper, levels.iter().map(|l| l.value));
+    }
+    levels.sort_by(|a, b| a.value.total_cmp(&b.value));
+    levels.retain(|l| l.value > task.lower.value && l.value < upper.value);
+    debug_assert!(levels.len() <= n);
+    Ok(Slice { levels, upper, complete: verdict == Verdict::Whole, backward })
+}
+
+/// How far a search is.
+enum State {
+    Done(End),
+    /// Levels still to converge, at least.
+    Wait(usize),
+}
+
+struct Judge {
+    lower: f64,
+    shift: f64,
+    /// Levels between `lower` and `shift`, by inertia.
+    inside: usize,
+    want: usize,
+    tolerance: f64,
+    cluster: f64,
+    /// Checks in a row in which only levels below the shift were missing, and how many.
+    stalled: (usize, usize),
+}
+
+impl Judge {
+    fn size(&self, value: f64) -> f64 {
+        let span = if self.lower.is_finite() { self.shift - self.lower } else { self.shift };
+        value.abs().max(1e-3 * span.abs())
+    }
+
+    fn good(&self, e: &Estimate) -> bool {
+        e.error <= self.tolerance * self.size(e.value)
+    }
+
+    /// Converged Ritz values inside the window, contiguous above the shift, and the next one.
+    fn list(&self, estimates: &[Estimate]) -> (Vec<Estimate>, usize, Option<f64>) {
+        let below = estimates
+            .iter()
+            .filter(|e| e.value > self.lower && e.value < self.shift && self.good(e));
+        let mut list: Vec<Estimate> = below.copied().collect();
+        let low = list.len();
+        let mut above = estimates.iter().filter(|e| e.value > self.shift);
+        let next = loop {
+            match above.next() {
+                Some(e) if self.good(e) => list.push(*e),
+                Some(e) => break Some(e.value - e.error),
+                None => break None,
+            }
+        };
+        (list, low, next)
+    }
+
+    fn state(&mut self, estimates: &[Estimate]) -> State {
+        let (list, low, next) = self.list(estimates);
+        let values: Vec<f64> = list.iter().map(|e| e.value).collect();
+        let end = certificate::end(&values, next, self.want.min(values.len().max(1)), self.cluster);
+        let short = self.inside.saturating_sub(low);
+        let enough = values.len() + short >= self.want;
+        if enough && short > 0 && next.is_some() {
+            self.stalled = if self.stalled.1 == low { (self.stalled.0 + 1, low) } else { (0, low) };
+        }
+        match end {
+            Some(end) if enough && (short == 0 || self.stalled.0 >= 3) => State::Done(end),
+            _ => State::Wait(self.want.saturating_sub(values.len()).max(short).max(1)),
+        }
+    }
+}
+
+/// The main Lanczos run, at the shift the factor stands at.
+fn search<T: Field, const B: usize>(
+    factor: &Factor<'_, T>,
+    pencil: &Pencil<'_, T>,
+    task: &mut Task<'_, T, B>,
+    spent: &mut Spent,
+) -> Result<(Vec<Level<T>>, End), EigenError> {
+    let mut judge = Judge {
+        lower: task.lower.value,
+        shift: factor.shift,
+        inside: factor.below.saturating_sub(task.lower.below),
+        want: task.want,
+        tolerance: task.tolerance,
+        cluster: task.cluster,
+        stalled: (0, 0),
+    };
+    let warm = task.start.is_some();
+    let mut run = Lanczos::<T, B>::start(pencil, factor, &task.known, task.start.take(), 1)?;
+    let want = task.want.max(judge.inside);
+    // The first look comes when about this many columns usually do; measured on splines.
+    let mut look = if warm { want + 2 * B } else { want * 5 / 4 + 4 * B };
+    let limit = 60 * (want + 4 * B) + 1000;
+    let mut seen = 0;
+    loop {
+        task.watch.step(task.done.0 + seen, task.done.1, "levels")?;
+        run.expand()?;
+        let full = run.columns() + B > task.columns || run.spent;
+        if run.columns() < look && !full {
+            continue;
+        }
+        let (eigen, estimates) = run.ritz()?;
+        let state = judge.state(&estimates);
+        let (list, _, _) = judge.list(&estimates);
+        seen = list.len().min(task.want);
+        let end = match state {
+            State::Done(end) => end,
+            State::Wait(missing) => {
+                if run.spent || run.solves > limit {
+                    return Err(EigenError::NotConverged {
+                        converged: list.len(),
+                        wanted: task.want,
+                        solves: run.solves,
+                    });
+                }
+                if full {
+                    let keep = keep_panels(task.columns, want, B);
+                    let mut by: Vec<&Estimate> = estimates.iter().collect();
+                    by.sort_by(|a, b| {
+                        (a.value - judge.shift).abs().total_cmp(&(b.value - judge.shift).abs())
+                    });
+                    let chosen: Vec<usize> = by.iter().take(keep * B).map(|e| e.column).collect();
+                    run.restart(&eigen, &chosen[..chosen.len() / B * B]);
+                }
+                look = run.columns() + (missing * 2 / 3).clamp(B, 8 * B) / B * B;
+                continue;
+            }
+        };
+        spent.solves += run.solves;
+        let chosen: Vec<usize> = list
+            .iter()
+            .filter(|e| e.value < end.shift)
+            .map(|e| e.column)
+            .collect();
+        let found = run.vectors(&eigen, &chosen);
+        return Ok((measure::<T, B>(pencil, &found, chosen.len()), end));
+    }
+}
+
+/// Panels kept at a restart: the window and a little more, and room for at least four new ones.
+fn keep_panels(columns: usize, want: usize, block: usize) -> usize {
+    let all = columns / block;
+    (want / block + 3).min(all.saturating_sub(4)).max(1)
+}
+
+/// Looks for levels that the count says are missing, away from all known ones, at the shift of
+/// the count.
+#[allow(clippy::too_many_arguments)]
+fn repair<T: Field, const B: usize>(
+    factor: &Factor<'_, T>,
+    pencil: &Pencil<'_, T>,
+    task: &mut Task<'_, T, B>,
+    found: &[Level<T>],
+    upper: Bound,
+    missing: usize,
+    round: usize,
+    spent: &mut Spent,
+) -> Result<Vec<Level<T>>, EigenError> {
+    let mut locked = lock::<T, B>(pencil, found.iter());
+    locked.v.extend(task.known.v.iter().cloned());
+    locked.mv.extend(task.known.mv.iter().cloned());
+    let judge = Judge {
+        lower: task.lower.value,
+        shift: factor.shift,
+        inside: 0,
+        want: missing,
+        tolerance: task.tolerance,
+        cluster: task.cluster,
+        stalled: (0, 0),
+    };
+    let seed = 100 + round as u64;
+    let mut run = Lanczos::<T, B>::start(pencil, factor, &locked, None, seed)?;
+    let mut idle = 0;
+    loop {
+        task.watch.step(task.done.0 + task.want.min(found.len()), task.done.1, "levels")?;
+        for _ in 0..2 {
+            run.expand()?;
+        }
+        let (eigen, estimates) = run.ritz()?;
+        let inside = |e: &&Estimate| e.value > judge.lower && e.value < upper.value;
+        let good: Vec<&Estimate> = estimates.iter().filter(inside).filter(|e| judge.good(e)).collect();
+        let open = estimates.iter().filter(inside).filter(|e| !judge.good(e)).count();
+        let full = run.columns() + 2 * B > task.columns || run.spent;
+        idle = if open == 0 { idle + 1 } else { 0 };
+        if good.len() >= missing || (idle >= 4 && !good.is_empty()) || idle >= 12 || full {
+            spent.solves += run.solves;
+            let chosen: Vec<usize> = good.iter().map(|e| e.column).take(missing).collect();
+            let vectors = run.vectors(&eigen, &chosen);
+            return Ok(measure::<T, B>(pencil, &vectors, chosen.len()));
+        }
+    }
+}
+
+/// Panels of known levels with their products with M.
+pub(super) fn lock<'l, T: Field, const B: usize>(
+    pencil: &Pencil<'_, T>,
+    levels: impl Iterator<Item = &'l Level<T>>,
+) -> Locked<T, B> {
+    let levels: Vec<&Level<T>> = levels.collect();
+    let v: Vec<Panel<T, B>> = levels
+        .chunks(B)
+        .map(|group| gather(pencil.pattern.size(), group.iter().map(|l| l.vector.as_slice())))
+        .collect();
+    let mv = v
+        .iter()
+        .map(|x| {
+            let mut y = Vec::new();
+            pencil.mass(x, &mut y);
+            y
+        })
+        .collect();
+    Locked { v, mv }
+}
+
+/// Up to B vectors side by side.
+pub(super) fn gather<'v, T: Field, const B: usize>(
+    n: usize,
+    vectors: impl Iterator<Item = &'v [T]>,
+) -> Panel<T, B> {
+    let mut panel = vec![T::zeros::<B>(); n];
+    for (c, x) in vectors.take(B).enumerate() {
+        for (row, &x) in panel.iter_mut().zip(x) {
+            T::put(row, c, x);
+        }
+    }
+    panel
+}
+
+/// Levels from vectors: the value by Rayleigh's quotient, the residual by fresh products.
+pub(super) fn measure<T: Field, const B: usize>(
+    pencil: &Pencil<'_, T>,
+    vectors: &Locked<T, B>,
+    count: usize,
+) -> Vec<Level<T>> {
+    let n = pencil.pattern.size();
+    let mut levels = Vec::with_capacity(count);
+    let mut kx = Vec::new();
+    for (v, mv) in vectors.v.iter().zip(&vectors.mv) {
+        pencil.stiffness(v, &mut kx);
+        for c in 0..B.min(count - levels.len()) {
+            let (mut top, mut bottom) = (0.0, 0.0);
+            for i in 0..n {
+                let x = T::at(&v[i], c).conj();
+                top += (x * T::at(&kx[i], c)).re();
+                bottom += (x * T::at(&mv[i], c)).re();
+            }
+            let value = top / bottom;
+            let norm = bottom.sqrt().recip();
+            let mut r = 0.0;
+            for i in 0..n {
+                let d = T::at(&kx[i], c) - T::at(&mv[i], c).scale(value);
+                r += Scalar::abs2(d) / pencil.mass[i];
+            }
+            let vector = v.iter().map(|row| T::at(row, c).scale(norm)).collect();
+            let size = value.abs().max(f64::MIN_POSITIVE);
+            levels.push(Level { value, residual: r.sqrt() * norm / size, vector });
+        }
+    }
+    levels
+}

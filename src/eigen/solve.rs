@@ -1,0 +1,358 @@
+//! The whole solve: plan, slices from the bottom up, proof.
+
+use super::certificate::{BOTTOM, Bound};
+use super::factor::{Factor, Symbolic};
+use super::field::Field;
+use super::pencil::{Pattern, Pencil};
+use super::request::{Count, Effort, Found, Problem, Settings, Window};
+use super::slice::{Level, Slice, Spent, Task, gather, lock, slice};
+use super::{EigenError, dense, window};
+use crate::progress::Watch;
+use crate::units::Scalar;
+use std::time::Instant;
+
+/// Order and symbolic factor of a pair of sparsity patterns, kept between solves.
+#[derive(Debug, Default)]
+pub struct Plan {
+    kept: Option<(Pattern, Symbolic)>,
+}
+
+impl Plan {
+    /// An empty plan; the first solve fills it.
+    pub fn new() -> Self {
+        Self::default()
+    }
+
+    /// The analysis for a problem: the kept one when the patterns are the same.
+    pub(super) fn ready<T: Field>(
+        &mut self,
+        problem: &Problem<'_, T>,
+    ) -> Result<&(Pattern, Symbolic), EigenError> {
+        let Problem { stiffness, mass, places, tail } = *problem;
+        match self.kept.take() {
+            Some(kept) if kept.0.fits(stiffness, mass, tail) => Ok(self.kept.insert(kept)),
+            _ => {
+                let pattern = Pattern::new(stiffness, mass, places, tail)?;
+                let symbolic = Symbolic::new(&pattern)?;
+                Ok(self.kept.insert((pattern, symbolic)))
+            }
+        }
+    }
+}
+
+/// Levels of a slice at most: longer windows are cut, each slice with its own shift.
+const SLICE: usize = 128;
+
+/// Below this many unknowns a dense solve is faster.
+const DENSE: usize = 96;
+
+/// The levels of `problem` in the window of `settings`, proved complete by their count.
+///
+/// # Errors
+/// See [`EigenError`]. An incomplete result is not an error: see [`Count::complete`].
+pub fn solve<T: Field>(
+    problem: &Problem<'_, T>,
+    settings: &Settings<'_, T>,
+    watch: &Watch,
+) -> Result<Found<T>, EigenError> {
+    solve_with(&mut Plan::new(), problem, settings, watch)
+}
+
+/// [`solve`] with a plan that is reused while the sparsity patterns stay.
+///
+/// # Errors
+/// See [`EigenError`].
+pub fn solve_with<T: Field>(
+    plan: &mut Plan,
+    problem: &Problem<'_, T>,
+    settings: &Settings<'_, T>,
+    watch: &Watch,
+) -> Result<Found<T>, EigenError> {
+    let n = problem.stiffness.rows();
+    check(settings, n, problem)?;
+    watch.step(0, settings.window.count(), "levels")?;
+    if n >= 30_000 {
+        wide::<T, 8>(plan, problem, settings, watch)
+    } else {
+        wide::<T, 4>(plan, problem, settings, watch)
+    }
+}
+
+fn check<T: Field>(
+    settings: &Settings<'_, T>,
+    n: usize,
+    problem: &Problem<'_, T>,
+) -> Result<(), EigenError> {
+    let count = settings.window.count();
+    if count == 0 {
+        return Err(EigenError::NothingAsked);
+    }
+    if count > n && n > 0 {
+        return Err(EigenError::TooMany { asked: count, available: n });
+    }
+    let setting = |name, value, right| Err(EigenError::Setting { name, value, right });
+    if !(1e-12..=1e-2).contains(&settings.tolerance) {
+        return setting("tolerance", settings.tolerance, "between 1e-12 and 1e-2");
+    }
+    if !(1e-12..=1e-1).contains(&settings.cluster) {
+        return setting("cluster", settings.cluster, "between 1e-12 and 0.1");
+    }
+    if let Window::From { value, .. } = settings.window
+        && !value.is_finite()
+    {
+        return setting("window.value", value, "a finite number");
+    }
+    let start = settings.start.unwrap_or_default();
+    if let Some(x) = start.iter().find(|x| x.len() != n) {
+        let text = format!("a start vector of {} entries for {} unknowns", x.len(), n);
+        return Err(EigenError::Shape(text));
+    }
+    let _ = problem;
+    Ok(())
+}
+
+fn wide<T: Field, const B: usize>(
+    plan: &mut Plan,
+    problem: &Problem<'_, T>,
+    settings: &Settings<'_, T>,
+    watch: &Watch,
+) -> Result<Found<T>, EigenError> {
+    let clock = Instant::now();
+    let (pattern, symbolic) = plan.ready(problem)?;
+    let plan_ms = clock.elapsed().as_secs_f64() * 1e3;
+    let clock = Instant::now();
+    let n = pattern.size();
+    let count = settings.window.count();
+    let pencil = Pencil::new(pattern, problem.stiffness, problem.mass)?;
+    let small = n <= DENSE || (n <= 1500 && count * 4 > n);
+    let room = room::<T, B>(n, count, pattern.columns.len(), symbolic.length(), settings.memory, small)?;
+    let mut factor = Factor::<T>::new(symbolic);
+    let mut spent = Spent::default();
+    let lower = match settings.window {
+        Window::Lowest(_) => BOTTOM,
+        Window::From { value, .. } => {
+            let clock = Instant::now();
+            factor.at(&pencil, value - 1e-9 * value.abs())?;
+            spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
+            Bound { value: factor.shift, below: factor.below }
+        }
+    };
+    if count > n - lower.below {
+        return Err(EigenError::TooMany { asked: count, available: n - lower.below });
+    }
+    let whole = if small {
+        all_dense(&mut factor, &pencil, lower, settings, &mut spent)?
+    } else {
+        sliced::<T, B>(&mut factor, &pencil, lower, problem, settings, &room, watch, &mut spent)?
+    };
+    let effort = Effort {
+        solves: spent.solves,
+        factorisations: factor.count,
+        factor_length: symbolic.length(),
+        memory: room.bytes,
+        plan_ms,
+        factor_ms: spent.factor_ms,
+        solve_ms: clock.elapsed().as_secs_f64() * 1e3 - spent.factor_ms,
+    };
+    let mut levels = whole.levels;
+    let rest = levels.split_off(count.min(levels.len()));
+    let found = lower.below + levels.len() + rest.len();
+    Ok(Found {
+        first_index: lower.below + 1,
+        beyond: rest.iter().map(|l| l.value).collect(),
+        count: Count {
+            shift: whole.upper.value,
+            below: whole.upper.below,
+            found,
+            complete: whole.complete && found == whole.upper.below && levels.len() == count,
+            backward: whole.backward,
+        },
+        values: levels.iter().map(|l| l.value).collect(),
+        residuals: levels.iter().map(|l| l.residual).collect(),
+        vectors: levels.iter().map(|l| pencil.outward(&l.vector)).collect(),
+        effort,
+    })
+}
+
+/// What fits in memory.
+struct Room {
+    /// Columns of a Lanczos basis.
+    columns: usize,
+    /// Levels of a slice.
+    slice: usize,
+    /// Bytes in all.
+    bytes: u64,
+}
+
+fn room<T: Field, const B: usize>(
+    n: usize,
+    count: usize,
+    entries: usize,
+    length: usize,
+    limit: u64,
+    small: bool,
+) -> Result<Room, EigenError> {
+    let size = size_of::<T>() as u64;
+    // Factor; K, M and the shifted matrix with their maps; the levels, inside and handed out.
+    let fixed = length as u64 * size + entries as u64 * (3 * size + 16) + 2 * (count * n) as u64 * size;
+    if small {
+        let bytes = fixed + 6 * (n * n) as u64 * size;
+        return if bytes > limit {
+            Err(EigenError::TooLarge { needed: bytes, limit })
+        } else {
+            Ok(Room { columns: n, slice: count, bytes })
+        };
+    }
+    // Slices of equal length; a basis of twice the slice, two vectors a column (x and Mx), and
+    // once more of half of them for the combination at a restart.
+    let slices = count.div_ceil(SLICE);
+    let mut slice = count.div_ceil(slices);
+    loop {
+        let columns = (2 * slice + 12 * B).min(n / 2).max(6 * B);
+        let bytes = fixed + (3 * columns * n) as u64 * size;
+        if bytes <= limit {
+            return Ok(Room { columns, slice, bytes });
+        }
+        if slice <= 4 {
+            return Err(EigenError::TooLarge { needed: bytes, limit });
+        }
+        slice = slice.div_ceil(2);
+    }
+}
+
+#[allow(clippy::too_many_arguments)]
+fn sliced<T: Field, const B: usize>(
+    factor: &mut Factor<'_, T>,
+    pencil: &Pencil<'_, T>,
+    bottom: Bound,
+    problem: &Problem<'_, T>,
+    settings: &Settings<'_, T>,
+    room: &Room,
+    watch: &Watch,
+    spent: &mut Spent,
+) -> Result<Slice<T>, EigenError> {
+    let count = settings.window.count();
+    let mut all = Slice { levels: Vec::new(), upper: bottom, complete: true, backward: 0.0 };
+    let last = window::top(settings, pencil, problem.places, problem.tail, bottom.below + count);
+    let mut width: Option<f64> = None;
+    while all.levels.len() < count {
+        let done = all.levels.len();
+        let lower = all.upper;
+        let want = room.slice.min(count - done);
+        let base = if lower.value.is_finite() { lower.value } else { 0.0 };
+        // Levels come about evenly (Weyl): the width of a slice follows the one before it.
+        let share = want as f64 / (count - done) as f64;
+        let top = match width {
+            Some(width) => base + width * want as f64,
+            None if bottom.below > 0 && !(last > base) => {
+                base * (1.0 + want as f64 / bottom.below as f64)
+            }
+            None => base + (last - base) * share,
+        };
+        // Levels below the slice as far as the shift reaches.
+        let reach = if lower.value.is_finite() { 0.6 * (top - base) } else { 0.0 };
+        let near = all.levels.iter().rev().take_while(|l| l.value > lower.value - reach).take(SLICE);
+        let known = lock::<T, B>(pencil, near);
+        let start = settings.start.filter(|s| !s.is_empty()).map(|s| mix::<T, B>(pencil, s));
+        let task = Task {
+            lower,
+            want,
+            top,
+            tolerance: settings.tolerance,
+            cluster: settings.cluster,
+            columns: room.columns.min(pencil.pattern.size() - known.v.len() * B - 2 * B),
+            known,
+            start,
+            watch,
+            done: (done, count),
+        };
+        let part = slice(factor, pencil, task, spent)?;
+        if part.levels.is_empty() {
+            all.complete = false;
+            break;
+        }
+        width = Some((part.upper.value - base) / part.levels.len() as f64);
+        all.levels.extend(part.levels);
+        all.upper = part.upper;
+        all.complete &= part.complete;
+        all.backward = all.backward.max(part.backward);
+    }
+    Ok(all)
+}
+
+/// B sums of the caller's vectors, with fixed pseudo-random weights so that none cancels.
+fn mix<T: Field, const B: usize>(
+    pencil: &Pencil<'_, T>,
+    vectors: &[Vec<T>],
+) -> super::panel::Panel<T, B> {
+    let n = pencil.pattern.size();
+    let mut noise = super::pencil::Noise::new(3);
+    let mut sums: Vec<Vec<T>> = vec![vec![T::default(); n]; B];
+    for (i, x) in vectors.iter().enumerate() {
+        let x = pencil.inward(x);
+        let weight = 1.0 + 0.5 * noise.next();
+        for (sum, &x) in sums[i % B].iter_mut().zip(&x) {
+            *sum += x.scale(weight);
+        }
+    }
+    for sum in sums.iter_mut().skip(vectors.len().min(B)) {
+        for x in sum.iter_mut() {
+            *x = T::from_parts(noise.next(), noise.next());
+        }
+    }
+    gather(n, sums.iter().map(Vec::as_slice))
+}
+
+/// Everything at once, for small problems; the count is the same as for large ones.
+fn all_dense<T: Field>(
+    factor: &mut Factor<'_, T>,
+    pencil: &Pencil<'_, T>,
+    lower: Bound,
+    settings: &Settings<'_, T>,
+    spent: &mut Spent,
+) -> Result<Slice<T>, EigenError> {
+    let p = pencil.pattern;
+    let n = p.size();
+    let (mut k, mut m) = (vec![T::default(); n * n], vec![T::default(); n * n]);
+    for i in 0..n {
+        for e in p.start[i] as usize..p.start[i + 1] as usize {
+            let j = p.columns[e] as usize;
+            for (full, half) in [(&mut k, &pencil.k), (&mut m, &pencil.m)] {
+                full[j * n + i] = half[e];
+                full[i * n + j] = half[e].conj();
+            }
+        }
+    }
+    let eigen = dense::generalised(&k, &m, n)?;
+    let first = eigen.values.iter().filter(|&&x| x < lower.value).count();
+    let values = &eigen.values[first..];
+    let count = settings.window.count().min(values.len());
+    let top = values.last().copied().unwrap_or(0.0);
+    let next = Some(top + 0.1 * top.abs() + f64::MIN_POSITIVE);
+    let end = super::certificate::end(values, next, count, settings.cluster);
+    let (keep, shift) = end.map_or((values.len(), top + 0.05 * top.abs()), |e| (e.keep, e.shift));
+    let vectors: Vec<&[T]> = eigen.vectors.chunks(n).skip(first).take(keep).collect();
+    let locked = super::lanczos::Locked::<T, 4> {
+        v: vectors.chunks(4).map(|g| gather(n, g.iter().copied())).collect(),
+        mv: Vec::new(),
+    };
+    let mv = locked.v.iter().map(|x| {
+        let mut y = Vec::new();
+        pencil.mass(x, &mut y);
+        y
+    });
+    let locked = super::lanczos::Locked { mv: mv.collect(), v: locked.v };
+    let mut levels: Vec<Level<T>> = super::slice::measure(pencil, &locked, keep);
+    levels.sort_by(|a, b| a.value.total_cmp(&b.value));
+    let clock = Instant::now();
+    factor.at(pencil, shift)?;
+    spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
+    let upper = Bound { value: factor.shift, below: factor.below };
+    let verdict = super::certificate::compare(lower, upper, levels.iter().map(|l| l.value));
+    Ok(Slice {
+        levels,
+        upper,
+        complete: verdict == super::certificate::Verdict::Whole,
+        backward: factor.backward,
+    })
+}
