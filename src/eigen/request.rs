@@ -119,7 +119,8 @@ pub struct Effort {
 pub struct Found<T> {
     /// Levels, ascending, once per copy.
     pub values: Vec<f64>,
-    /// Their vectors, xᴴMx = 1, mutually M-orthogonal.
+    /// Their vectors, xᴴMx = 1; M-orthogonal to rounding within a slice (128 levels at most), to
+    /// the tolerance across slices.
     pub vectors: Vec<Vec<T>>,
     /// ‖Kx − λMx‖ in the norm of diag(M)⁻¹, over |λ|.
     pub residuals: Vec<f64>,

@@ -189,7 +189,9 @@ fn search<T: Field, const B: usize>(
     let mut run = Lanczos::<T, B>::start(pencil, factor, &task.known, task.start.take(), 1)?;
     let want = task.want.max(judge.inside);
     // The first look comes when about this many columns usually do; measured on splines.
-    let mut look = if warm { want + 2 * B } else { want * 5 / 4 + 4 * B };
+    let digits = -task.tolerance.log10();
+    let usual = (want as f64 * (1.3 + 0.1 * digits)) as usize + 5 * B;
+    let mut look = if warm { want + 2 * B } else { usual };
     let limit = 60 * (want + 4 * B) + 1000;
     let mut seen = 0;
     loop {

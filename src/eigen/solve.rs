@@ -8,7 +8,6 @@ use super::request::{Count, Effort, Found, Problem, Settings, Window};
 use super::slice::{Level, Slice, Spent, Task, gather, lock, slice};
 use super::{EigenError, dense, window};
 use crate::progress::Watch;
-use crate::units::Scalar;
 use std::time::Instant;
 
 /// Order and symbolic factor of a pair of sparsity patterns, kept between solves.

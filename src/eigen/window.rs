@@ -5,7 +5,6 @@ use super::factor::Factor;
 use super::field::Field;
 use super::pencil::Pencil;
 use super::{EigenError, Settings};
-use crate::units::Scalar;
 
 /// Share of the window's levels that may lie below the shift. Solves are fewest in the middle;
 /// within this range they rise by less than another factorisation costs.
