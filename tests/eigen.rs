@@ -1,11 +1,13 @@
 //! The eigenvalue solver against closed forms, dense solutions and its own promises.
-#![allow(clippy::unwrap_used)]
+// Textbook loops of an independent check are read beside the textbook.
+#![allow(clippy::unwrap_used, clippy::needless_range_loop)]
 
 #[path = "common/pencils.rs"]
 mod pencils;
 
 use dotwright::eigen::{
-    EigenError, Field, Found, Plan, Problem, Settings, Window, draft, solve, solve_with,
+    EigenError, Field, Found, Plan, Problem, Settings, Window, count_below, draft, solve,
+    solve_with,
 };
 use dotwright::progress::{Step, Watch};
 use num_complex::Complex64;
@@ -14,7 +16,12 @@ use sprs::CsMat;
 use std::sync::{Arc, Mutex};
 
 fn lowest<T: Field>(pencil: &Pencil<T>, count: usize) -> Found<T> {
-    solve(&pencil.problem(), &Settings::new(Window::Lowest(count)), &Watch::quiet()).unwrap()
+    solve(
+        &pencil.problem(),
+        &Settings::new(Window::Lowest(count)),
+        &Watch::quiet(),
+    )
+    .unwrap()
 }
 
 /// Every promise of a result that can be checked from outside.
@@ -23,7 +30,11 @@ fn check<T: Field>(pencil: &Pencil<T>, found: &Found<T>, tolerance: f64) {
     assert_eq!(found.count.below, found.count.found);
     assert!(found.count.backward <= 1e-11);
     assert!(found.values.windows(2).all(|w| w[0] <= w[1]));
-    let mass: Vec<Vec<T>> = found.vectors.iter().map(|x| times(&pencil.mass, x)).collect();
+    let mass: Vec<Vec<T>> = found
+        .vectors
+        .iter()
+        .map(|x| times(&pencil.mass, x))
+        .collect();
     for (i, x) in found.vectors.iter().enumerate() {
         let kx = times(&pencil.stiffness, x);
         let mut r = 0.0;
@@ -33,11 +44,19 @@ fn check<T: Field>(pencil: &Pencil<T>, found: &Found<T>, tolerance: f64) {
         }
         // The reported residual is the true one, to rounding of the products.
         let r = r.sqrt() / found.values[i].abs();
-        assert!((r - found.residuals[i]).abs() <= 1e-3 * r + 1e-10, "{r} {}", found.residuals[i]);
+        assert!(
+            (r - found.residuals[i]).abs() <= 1e-3 * r + 1e-10,
+            "{r} {}",
+            found.residuals[i]
+        );
         // The norm of diag(M)⁻¹ may exceed the one the iteration judges by; not by much.
         assert!(r <= 30.0 * tolerance, "residual {i}: {r:e}");
         for j in 0..=i {
-            let dot: T = mass[i].iter().zip(&found.vectors[j]).map(|(&a, &b)| b.conj() * a).sum();
+            let dot: T = mass[i]
+                .iter()
+                .zip(&found.vectors[j])
+                .map(|(&a, &b)| b.conj() * a)
+                .sum();
             let expected = T::from_re(if i == j { 1.0 } else { 0.0 });
             // Within a slice to rounding; across slices to the tolerance, over the relative gap.
             assert!((dot - expected).abs() < tolerance, "{i} {j}: {dot:?}");
@@ -46,7 +65,9 @@ fn check<T: Field>(pencil: &Pencil<T>, found: &Found<T>, tolerance: f64) {
 }
 
 fn times<T: Field>(a: &CsMat<T>, x: &[T]) -> Vec<T> {
-    a.outer_iterator().map(|row| row.iter().map(|(j, &v)| v * x[j]).sum()).collect()
+    a.outer_iterator()
+        .map(|row| row.iter().map(|(j, &v)| v * x[j]).sum())
+        .collect()
 }
 
 /// All levels of a small pencil by the solver's dense way (itself checked against Jacobi below).
@@ -58,7 +79,13 @@ fn all_levels<T: Field>(pencil: &Pencil<T>) -> Vec<f64> {
 fn jacobi(pencil: &Pencil<f64>) -> Vec<f64> {
     let n = pencil.stiffness.rows();
     let dense = |a: &CsMat<f64>| -> Vec<Vec<f64>> {
-        (0..n).map(|i| (0..n).map(|j| a.get(i, j).copied().unwrap_or(0.0)).collect()).collect()
+        (0..n)
+            .map(|i| {
+                (0..n)
+                    .map(|j| a.get(i, j).copied().unwrap_or(0.0))
+                    .collect()
+            })
+            .collect()
     };
     let (mut a, m) = (dense(&pencil.stiffness), dense(&pencil.mass));
     let mut l = vec![vec![0.0; n]; n];
@@ -108,16 +135,23 @@ fn jacobi(pencil: &Pencil<f64>) -> Vec<f64> {
 
 fn close(found: &[f64], exact: &[f64], relative: f64) {
     for (i, (a, b)) in found.iter().zip(exact).enumerate() {
-        assert!((a - b).abs() <= relative * b.abs().max(1e-3), "level {}: {a} for {b}", i + 1);
+        assert!(
+            (a - b).abs() <= relative * b.abs().max(1e-3),
+            "level {}: {a} for {b}",
+            i + 1
+        );
     }
 }
 
 #[test]
 fn the_square_with_its_degeneracies() {
     // Error of splines of degree p at √λ h: c(h√λ)^2p, far below these bounds.
-    for (p, cells, count, bound) in
-        [(3, 8, 4, 2e-4), (3, 31, 20, 2e-6), (5, 29, 50, 1e-7), (3, 62, 50, 2e-6)]
-    {
+    for (p, cells, count, bound) in [
+        (3, 8, 4, 2e-4),
+        (3, 31, 20, 2e-6),
+        (5, 29, 50, 1e-7),
+        (3, 62, 50, 2e-6),
+    ] {
         let pencil = square(p, cells);
         let found = lowest(&pencil, count);
         check(&pencil, &found, 1e-7);
@@ -225,10 +259,13 @@ fn many_levels_in_slices() {
 fn differences_and_a_hint_that_is_wrong() {
     let pencil = five_point(40, 37);
     let level = |i: usize, n: usize| {
-        (std::f64::consts::PI * i as f64 / (2.0 * (n as f64 + 1.0))).sin().powi(2)
+        (std::f64::consts::PI * i as f64 / (2.0 * (n as f64 + 1.0)))
+            .sin()
+            .powi(2)
     };
-    let mut exact: Vec<f64> =
-        (1..=40).flat_map(|i| (1..=37).map(move |j| level(i, 40) + level(j, 37))).collect();
+    let mut exact: Vec<f64> = (1..=40)
+        .flat_map(|i| (1..=37).map(move |j| level(i, 40) + level(j, 37)))
+        .collect();
     exact.sort_by(f64::total_cmp);
     for guess in [None, Some(1e-9), Some(1e6), Some(-5.0), Some(exact[24])] {
         let mut settings = Settings::new(Window::Lowest(25));
@@ -284,15 +321,24 @@ fn a_draft_after_an_edit() {
     edit(&mut after, 0.01);
     let exact = lowest(&after, 20).values;
     let mut plan = Plan::new();
-    let quick =
-        draft(&mut plan, &after.problem(), &before.vectors, &before.values, &Watch::quiet())
-            .unwrap();
+    let quick = draft(
+        &mut plan,
+        &after.problem(),
+        &before.vectors,
+        &before.values,
+        &Watch::quiet(),
+    )
+    .unwrap();
     for (a, b) in quick.values.iter().zip(&exact) {
         // Rayleigh–Ritz comes from above; one inverse step leaves about 1e-6.
         assert!(a / b - 1.0 > -1e-11 && a / b - 1.0 < 2e-6, "{a} for {b}");
     }
     for x in &quick.vectors {
-        let norm: f64 = times(&after.mass, x).iter().zip(x).map(|(a, b)| a * b).sum();
+        let norm: f64 = times(&after.mass, x)
+            .iter()
+            .zip(x)
+            .map(|(a, b)| a * b)
+            .sum();
         assert!((norm - 1.0).abs() < 1e-10);
     }
 }
@@ -335,9 +381,21 @@ fn dense_rows_at_the_end_come_last() {
     }
     let mut places = inner.places.clone();
     places.extend([[0.3, 0.3], [0.6, 0.3]]);
-    let whole = Pencil { stiffness: k.to_csr(), mass: m.to_csr(), places };
-    let problem = Problem { tail: 2, ..whole.problem() };
-    let found = solve(&problem, &Settings::new(Window::Lowest(12)), &Watch::quiet()).unwrap();
+    let whole = Pencil {
+        stiffness: k.to_csr(),
+        mass: m.to_csr(),
+        places,
+    };
+    let problem = Problem {
+        tail: 2,
+        ..whole.problem()
+    };
+    let found = solve(
+        &problem,
+        &Settings::new(Window::Lowest(12)),
+        &Watch::quiet(),
+    )
+    .unwrap();
     check(&whole, &found, 1e-7);
     close(&found.values, &all_levels(&whole), 1e-9);
 }
@@ -365,7 +423,13 @@ fn called_off_and_watched() {
     let result = solve(&pencil.problem(), &settings, &watch);
     assert!(matches!(result, Err(EigenError::Cancelled(_))));
     assert_eq!(steps.lock().unwrap().len(), 2);
-    assert!(steps.lock().unwrap().iter().all(|s| s.of == 20 && s.done <= 20));
+    assert!(
+        steps
+            .lock()
+            .unwrap()
+            .iter()
+            .all(|s| s.of == 20 && s.done <= 20)
+    );
 }
 
 #[test]
@@ -378,49 +442,87 @@ fn bad_input_is_refused_in_words() {
     };
     assert!(matches!(ask(0), Err(EigenError::NothingAsked)));
     assert!(matches!(ask(n + 1), Err(EigenError::TooMany { available, .. }) if available == n));
-    let above = Window::From { value: 1e9, count: 1 };
+    let above = Window::From {
+        value: 1e9,
+        count: 1,
+    };
     let result = solve(&pencil.problem(), &Settings::new(above), &Watch::quiet());
-    assert!(matches!(result, Err(EigenError::TooMany { available: 0, .. })));
+    assert!(matches!(
+        result,
+        Err(EigenError::TooMany { available: 0, .. })
+    ));
 
     for bad in [f64::NAN, f64::INFINITY] {
         let mut broken = square(3, 8);
         *broken.stiffness.get_mut(3, 4).unwrap() = bad;
-        assert!(matches!(refused(&broken), EigenError::NotFinite { matrix: "stiffness", row: 3 }));
+        assert!(matches!(
+            refused(&broken),
+            EigenError::NotFinite {
+                matrix: "stiffness",
+                row: 3
+            }
+        ));
     }
     let mut broken = square(3, 8);
     *broken.mass.get_mut(3, 4).unwrap() *= 1.001;
-    assert!(matches!(refused(&broken), EigenError::NotHermitian { matrix: "mass", .. }));
+    assert!(matches!(
+        refused(&broken),
+        EigenError::NotHermitian { matrix: "mass", .. }
+    ));
     let mut broken = square(3, 8);
     *broken.mass.get_mut(5, 5).unwrap() = -1.0;
-    assert!(matches!(refused(&broken), EigenError::MassNotPositive { .. }));
+    assert!(matches!(
+        refused(&broken),
+        EigenError::MassNotPositive { .. }
+    ));
     // Indefinite with a positive diagonal.
     let mut broken = square(3, 8);
     for (i, j) in [(10, 11), (11, 10)] {
         *broken.mass.get_mut(i, j).unwrap() *= 10.0;
     }
-    assert!(matches!(refused(&broken), EigenError::MassNotPositive { .. }));
+    assert!(matches!(
+        refused(&broken),
+        EigenError::MassNotPositive { .. }
+    ));
     let mut large = square(3, 40);
     for (i, j) in [(700, 701), (701, 700)] {
         *large.mass.get_mut(i, j).unwrap() *= 10.0;
     }
-    assert!(matches!(refused(&large), EigenError::MassNotPositive { .. }));
+    assert!(matches!(
+        refused(&large),
+        EigenError::MassNotPositive { .. }
+    ));
 
-    let problem = Problem { places: &pencil.places[1..], ..pencil.problem() };
+    let problem = Problem {
+        places: &pencil.places[1..],
+        ..pencil.problem()
+    };
     let result = solve(&problem, &Settings::new(Window::Lowest(1)), &Watch::quiet());
     assert!(matches!(result, Err(EigenError::Shape(_))));
     let mut small = Settings::new(Window::Lowest(5));
     small.memory = 1000;
     let result = solve(&pencil.problem(), &small, &Watch::quiet());
-    assert!(matches!(result, Err(EigenError::TooLarge { limit: 1000, .. })));
+    assert!(matches!(
+        result,
+        Err(EigenError::TooLarge { limit: 1000, .. })
+    ));
     let mut wrong = Settings::new(Window::Lowest(5));
     wrong.tolerance = f64::NAN;
     let result = solve(&pencil.problem(), &wrong, &Watch::quiet());
-    assert!(matches!(result, Err(EigenError::Setting { name: "tolerance", .. })));
+    assert!(matches!(
+        result,
+        Err(EigenError::Setting {
+            name: "tolerance",
+            ..
+        })
+    ));
 }
 
 fn refused(pencil: &Pencil<f64>) -> EigenError {
     let settings = Settings::new(Window::Lowest(5));
-    solve(&pencil.problem(), &settings, &Watch::quiet()).map(|_| ()).unwrap_err()
+    solve(&pencil.problem(), &settings, &Watch::quiet())
+        .map(|_| ())
+        .unwrap_err()
 }
 
 #[test]
@@ -444,4 +546,53 @@ fn tiny_problems() {
         places: vec![[0.0, 0.0]],
     };
     assert!((lowest(&one, 1).values[0] + 0.5).abs() < 1e-15);
+}
+
+#[test]
+fn inertia_is_the_dense_count_at_random_shifts() {
+    fn run<T: Field>(pencil: &Pencil<T>, shifts: usize, seed: u64) {
+        let all = all_levels(pencil);
+        let (low, high) = (all[0], all[all.len() - 1]);
+        let mut dice = pencils::Dice(seed);
+        let mut plan = Plan::new();
+        for _ in 0..shifts {
+            let shift = low + (high - low) * (0.55 * dice.roll() + 0.5);
+            let there = all.iter().filter(|&&x| x < shift).count();
+            assert_eq!(
+                count_below(&mut plan, &pencil.problem(), shift).unwrap(),
+                there
+            );
+        }
+        // As near to levels as 1e-9, where the factorisation is all but singular.
+        for i in (0..all.len() - 1).step_by(all.len() / 10) {
+            if all[i + 1] - all[i] > 1e-6 * all[i].abs() {
+                let shift = all[i] + 1e-9 * all[i].abs();
+                assert_eq!(
+                    count_below(&mut plan, &pencil.problem(), shift).unwrap(),
+                    i + 1
+                );
+            }
+        }
+    }
+    run(&square(3, 12), 60, 1);
+    run(&random(150, 4, true, 5), 50, 2);
+    run(&random(150, 4, false, 6), 50, 3);
+    run(&torus(12, 12, 3), 40, 4);
+}
+
+#[test]
+fn a_shift_that_falls_on_a_level() {
+    // The shift starts at half of the expected last level: put it on a level, a pair, nearly on.
+    for (pencil, count) in [(square(5, 29), 20), (five_point(30, 30), 20)] {
+        let exact = lowest(&pencil, 30).values;
+        for level in [5, 9, 10, 11] {
+            for off in [0.0, 1e-15, 1e-12, -1e-9, 1e-7] {
+                let mut settings = Settings::new(Window::Lowest(count));
+                settings.guess = Some(2.0 * exact[level] * (1.0 + off));
+                let found = solve(&pencil.problem(), &settings, &Watch::quiet()).unwrap();
+                check(&pencil, &found, 1e-7);
+                close(&found.values, &exact, 1e-10);
+            }
+        }
+    }
 }

@@ -10,7 +10,10 @@ pub(super) struct Bound {
 }
 
 /// The bottom of every spectrum.
-pub(super) const BOTTOM: Bound = Bound { value: f64::NEG_INFINITY, below: 0 };
+pub(super) const BOTTOM: Bound = Bound {
+    value: f64::NEG_INFINITY,
+    below: 0,
+};
 
 /// The verdict on a slice between two shifts.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -29,8 +32,10 @@ pub(super) fn compare(
     upper: Bound,
     values: impl IntoIterator<Item = f64>,
 ) -> Verdict {
-    let found =
-        values.into_iter().filter(|&x| x > lower.value && x < upper.value).count();
+    let found = values
+        .into_iter()
+        .filter(|&x| x > lower.value && x < upper.value)
+        .count();
     let there = upper.below.saturating_sub(lower.below);
     match there.cmp(&found) {
         std::cmp::Ordering::Equal => Verdict::Whole,
@@ -57,7 +62,9 @@ pub(super) fn end(levels: &[f64], next: Option<f64>, want: usize, cluster: f64) 
     let mut widest: Option<(f64, End)> = None;
     for keep in want..=levels.len() {
         let last = levels[keep - 1];
-        let Some(after) = levels.get(keep).copied().or(next) else { break };
+        let Some(after) = levels.get(keep).copied().or(next) else {
+            break;
+        };
         let size = last.abs().max(after.abs());
         let gap = after - last;
         // Close above the last level, so that one not seen yet does not fall below by chance.
@@ -103,9 +110,18 @@ mod tests {
 
     #[test]
     fn misses_and_copies_are_told_apart() {
-        let (lower, upper) = (BOTTOM, Bound { value: 10.0, below: 3 });
+        let (lower, upper) = (
+            BOTTOM,
+            Bound {
+                value: 10.0,
+                below: 3,
+            },
+        );
         assert_eq!(compare(lower, upper, [1.0, 2.0, 3.0, 11.0]), Verdict::Whole);
         assert_eq!(compare(lower, upper, [1.0, 2.0]), Verdict::Missing(1));
-        assert_eq!(compare(lower, upper, [1.0, 2.0, 2.0, 3.0]), Verdict::Surplus(1));
+        assert_eq!(
+            compare(lower, upper, [1.0, 2.0, 2.0, 3.0]),
+            Verdict::Surplus(1)
+        );
     }
 }

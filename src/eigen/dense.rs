@@ -2,13 +2,13 @@
 
 use super::EigenError;
 use super::field::Field;
+use faer::diag::Diag;
 use faer::dyn_stack::{MemBuffer, MemStack};
 use faer::linalg::cholesky::llt;
 use faer::linalg::evd::{ComputeEigenvectors, self_adjoint_evd, self_adjoint_evd_scratch};
 use faer::linalg::triangular_solve::{
     solve_lower_triangular_in_place, solve_upper_triangular_in_place,
 };
-use faer::diag::Diag;
 use faer::{Mat, MatMut, MatRef, Par};
 
 /// Eigenvalues, ascending, and eigenvectors, column by column.
@@ -24,7 +24,8 @@ pub(super) struct Eigen<T> {
 pub(super) fn hermitian<T: Field>(a: &[T], m: usize) -> Result<Eigen<T>, EigenError> {
     let mut vectors = vec![T::default(); m * m];
     let mut values = Diag::<T>::zeros(m);
-    let need = self_adjoint_evd_scratch::<T>(m, ComputeEigenvectors::Yes, Par::Seq, Default::default());
+    let need =
+        self_adjoint_evd_scratch::<T>(m, ComputeEigenvectors::Yes, Par::Seq, Default::default());
     self_adjoint_evd(
         MatRef::from_column_major_slice(a, m, m),
         values.as_mut(),
@@ -54,13 +55,18 @@ pub(super) fn generalised<T: Field>(k: &[T], m: &[T], n: usize) -> Result<Eigen<
         MemStack::new(&mut MemBuffer::new(need)),
         Default::default(),
     )
-    .map_err(|_| EigenError::MassNotPositive { place: "its Cholesky factor".into() })?;
+    .map_err(|_| EigenError::MassNotPositive {
+        place: "its Cholesky factor".into(),
+    })?;
     // C = L⁻¹ K L⁻ᴴ, in two solves from the left: C = L⁻¹ (L⁻¹ K)ᴴ.
     let mut c: Mat<T> = MatRef::from_column_major_slice(k, n, n).to_owned();
     solve_lower_triangular_in_place(l.as_ref(), c.as_mut(), seq);
     let mut c = c.adjoint().to_owned();
     solve_lower_triangular_in_place(l.as_ref(), c.as_mut(), seq);
-    let flat: Vec<T> = (0..n).flat_map(|j| (0..n).map(move |i| (i, j))).map(|at| c[at]).collect();
+    let flat: Vec<T> = (0..n)
+        .flat_map(|j| (0..n).map(move |i| (i, j)))
+        .map(|at| c[at])
+        .collect();
     let mut eigen = hermitian(&flat, n)?;
     solve_upper_triangular_in_place(
         l.adjoint(),

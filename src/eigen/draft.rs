@@ -41,7 +41,11 @@ pub fn draft<T: Field>(
         return Err(EigenError::NothingAsked);
     }
     if old.len() > n || old.len() != levels.len() || old.iter().any(|x| x.len() != n) {
-        let text = format!("{} old modes with {} levels for {n} unknowns", old.len(), levels.len());
+        let text = format!(
+            "{} old modes with {} levels for {n} unknowns",
+            old.len(),
+            levels.len()
+        );
         return Err(EigenError::Shape(text));
     }
     watch.step(0, old.len(), "draft levels")?;
@@ -84,9 +88,13 @@ pub fn draft<T: Field>(
     };
     let (mut k, mut m) = (project(&ky), project(&my));
     // Unit diagonal of M: the inverse step stretches modes by very different factors.
-    let norms: Vec<f64> = (0..count).map(|i| m[i * count + i].re().max(0.0).sqrt().recip()).collect();
+    let norms: Vec<f64> = (0..count)
+        .map(|i| m[i * count + i].re().max(0.0).sqrt().recip())
+        .collect();
     if norms.iter().any(|x| !x.is_finite()) {
-        return Err(EigenError::MassNotPositive { place: "the norm of an old mode".into() });
+        return Err(EigenError::MassNotPositive {
+            place: "the norm of an old mode".into(),
+        });
     }
     for j in 0..count {
         for i in 0..count {
@@ -110,7 +118,10 @@ pub fn draft<T: Field>(
             pencil.outward(&x)
         })
         .collect();
-    Ok(Drafted { values: eigen.values, vectors })
+    Ok(Drafted {
+        values: eigen.values,
+        vectors,
+    })
 }
 
 /// The middle of the widest gap among the middle half of the levels.

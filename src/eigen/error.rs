@@ -12,7 +12,9 @@ pub enum EigenError {
     #[error("the problem does not fit together: {0}")]
     Shape(String),
     /// A matrix holds NaN or infinity.
-    #[error("the {matrix} matrix holds a number that is not finite (row {row}); check the assembly")]
+    #[error(
+        "the {matrix} matrix holds a number that is not finite (row {row}); check the assembly"
+    )]
     NotFinite {
         /// "stiffness" or "mass".
         matrix: &'static str,
@@ -31,7 +33,9 @@ pub enum EigenError {
         relative: f64,
     },
     /// The mass matrix is not positive definite.
-    #[error("the mass matrix is not positive definite (seen at {place}); a norm cannot be made of it")]
+    #[error(
+        "the mass matrix is not positive definite (seen at {place}); a norm cannot be made of it"
+    )]
     MassNotPositive {
         /// Where it was noticed.
         place: String,
@@ -69,7 +73,9 @@ pub enum EigenError {
         limit: u64,
     },
     /// No usable factorisation near a shift.
-    #[error("no stable factorisation of K − σM near σ = {shift:e}: the test solve leaves {residual:.1e}")]
+    #[error(
+        "no stable factorisation of K − σM near σ = {shift:e}: the test solve leaves {residual:.1e}"
+    )]
     Unstable {
         /// The shift.
         shift: f64,

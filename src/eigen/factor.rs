@@ -170,7 +170,10 @@ impl<'a, T: Field> Factor<'a, T> {
                 }
             }
         }
-        Err(EigenError::Unstable { shift, residual: best })
+        Err(EigenError::Unstable {
+            shift,
+            residual: best,
+        })
     }
 
     fn numeric(&mut self, pencil: &Pencil<'_, T>, shift: f64, kind: Kind) -> bool {
@@ -179,7 +182,11 @@ impl<'a, T: Field> Factor<'a, T> {
         self.kind = kind;
         self.lower.clear();
         self.lower.extend(
-            pencil.k.iter().zip(&pencil.m).map(|(&k, &m)| (k - m.scale(shift)).conj()),
+            pencil
+                .k
+                .iter()
+                .zip(&pencil.m)
+                .map(|(&k, &m)| (k - m.scale(shift)).conj()),
         );
         let n = pencil.pattern.size();
         let shape = SymbolicSparseColMatRef::new_unsorted_checked(
@@ -285,9 +292,18 @@ impl<'a, T: Field> Factor<'a, T> {
             size += xi.abs2();
             rhs += bi.abs2();
         }
-        let largest = self.lower.iter().map(|a| Scalar::abs2(*a)).fold(0.0, f64::max).sqrt();
+        let largest = self
+            .lower
+            .iter()
+            .map(|a| Scalar::abs2(*a))
+            .fold(0.0, f64::max)
+            .sqrt();
         let error = r.sqrt() / (largest * size.sqrt() + rhs.sqrt());
-        if error.is_finite() { error } else { f64::INFINITY }
+        if error.is_finite() {
+            error
+        } else {
+            f64::INFINITY
+        }
     }
 
     /// Negative eigenvalues of the matrix, from the pivots (Sylvester's law of inertia).
@@ -309,7 +325,11 @@ impl<'a, T: Field> Factor<'a, T> {
                 // A 2×2 pivot is indefinite unless its determinant is positive.
                 let (p, q) = (block[j * high + j].re(), block[(j + 1) * high + j + 1].re());
                 let det = p * q - Scalar::abs2(self.subdiagonal[a + j]);
-                count += if det < 0.0 { 1 } else { 2 * usize::from(p < 0.0) };
+                count += if det < 0.0 {
+                    1
+                } else {
+                    2 * usize::from(p < 0.0)
+                };
                 j += 2;
             }
         }

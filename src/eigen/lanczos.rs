@@ -224,12 +224,12 @@ impl<'a, T: Field, const B: usize> Lanczos<'a, T, B> {
         for (j, column) in self.t.iter().enumerate() {
             for (k, block) in column.iter().enumerate() {
                 for (p, row) in block.iter().enumerate() {
-                    for q in 0..B {
+                    for (q, mirror) in block.iter().enumerate() {
                         let x = T::at(row, q);
                         let (i, c) = (k * B + p, j * B + q);
                         if k == j {
                             // Hermitian up to rounding; make it so.
-                            let half = (x + T::at(&block[q], p).conj()).scale(0.5);
+                            let half = (x + T::at(mirror, p).conj()).scale(0.5);
                             a[c * m + i] = half;
                         } else {
                             a[c * m + i] = x;
@@ -246,7 +246,12 @@ impl<'a, T: Field, const B: usize> Lanczos<'a, T, B> {
             if theta == 0.0 {
                 continue;
             }
-            let rho = self.coupling(&eigen, column).iter().map(|x| x.abs2()).sum::<f64>().sqrt();
+            let rho = self
+                .coupling(&eigen, column)
+                .iter()
+                .map(|x| x.abs2())
+                .sum::<f64>()
+                .sqrt();
             estimates.push(Estimate {
                 value: self.factor.shift + 1.0 / theta,
                 error: rho / (theta * theta),
@@ -293,8 +298,9 @@ impl<'a, T: Field, const B: usize> Lanczos<'a, T, B> {
                     if improve {
                         let theta = eigen.values[column];
                         let tail = self.coupling(eigen, column).map(|x| x.scale(1.0 / theta));
-                        let norm =
-                            (1.0 + tail.iter().map(|x| x.abs2()).sum::<f64>()).sqrt().recip();
+                        let norm = (1.0 + tail.iter().map(|x| x.abs2()).sum::<f64>())
+                            .sqrt()
+                            .recip();
                         for (p, &x) in tail.iter().enumerate() {
                             T::put(&mut squares[self.v.len() - 1][p], c, x);
                         }
@@ -344,7 +350,12 @@ impl<'a, T: Field, const B: usize> Lanczos<'a, T, B> {
 /// The largest squared norm of the columns a set of coefficients stands for.
 fn squared_norms<T: Field, const B: usize>(h: &[Square<T, B>]) -> f64 {
     (0..B)
-        .map(|c| h.iter().flatten().map(|row| T::at(row, c).abs2()).sum::<f64>())
+        .map(|c| {
+            h.iter()
+                .flatten()
+                .map(|row| T::at(row, c).abs2())
+                .sum::<f64>()
+        })
         .fold(0.0, f64::max)
 }
 

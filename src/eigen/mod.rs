@@ -4,10 +4,10 @@
 //! window. Leaves: levels and vectors with residuals, and a count that proves that none is
 //! missing. This room does not know what the levels mean.
 //!
-//! The way through: [`order`] and [`pencil`] put both matrices into elimination order, [`factor`]
-//! factorises K − σM with σ from [`window`], [`lanczos`] finds the levels around σ, and
-//! [`certificate`] compares them with the inertia above the last; [`slice`] holds these together,
-//! [`solve`] cuts long windows into slices.
+//! The way through: `order` and `pencil` put both matrices into elimination order, `factor`
+//! factorises K − σM with σ from `window`, `lanczos` finds the levels around σ, and
+//! `certificate` compares them with the inertia above the last; `slice` holds these together,
+//! `solve` cuts long windows into slices.
 
 mod certificate;
 mod dense;
@@ -30,4 +30,4 @@ pub use draft::{Drafted, draft};
 pub use error::EigenError;
 pub use field::Field;
 pub use request::{Count, Effort, Found, Problem, Settings, Window, machine_memory};
-pub use solve::{Plan, solve, solve_with};
+pub use solve::{Plan, count_below, solve, solve_with};

@@ -41,7 +41,12 @@ where
                 }
             }
         }
-        all.push(Unknown { id: i as u32, at, low, high });
+        all.push(Unknown {
+            id: i as u32,
+            at,
+            low,
+            high,
+        });
     }
     // A set no larger than a typical neighbourhood fills up whatever the order.
     let leaf = (entries / inner.max(1)).clamp(8, 128);
@@ -62,15 +67,27 @@ struct Cut {
 }
 
 fn split(set: &mut [Unknown], leaf: usize, depth: usize, order: &mut Vec<u32>) {
-    let cut = if set.len() <= leaf || depth > 60 { None } else { best_cut(set) };
+    let cut = if set.len() <= leaf || depth > 60 {
+        None
+    } else {
+        best_cut(set)
+    };
     let Some(cut) = cut else {
         order.extend(set.iter().map(|u| u.id));
         return;
     };
     let part = |u: &Unknown| -> u8 {
         let low = u.at[cut.axis] <= cut.at;
-        let across = if low { u.high[cut.axis] > cut.at } else { u.low[cut.axis] <= cut.at };
-        if across && low == cut.from_low { 2 } else { u8::from(!low) }
+        let across = if low {
+            u.high[cut.axis] > cut.at
+        } else {
+            u.low[cut.axis] <= cut.at
+        };
+        if across && low == cut.from_low {
+            2
+        } else {
+            u8::from(!low)
+        }
     };
     set.sort_by_key(part);
     let low = set.partition_point(|u| part(u) == 0);
@@ -119,7 +136,12 @@ fn best_cut(set: &mut [Unknown]) -> Option<Cut> {
                 let s = separator as f64;
                 let cost = (a as f64).powf(1.5) + (b as f64).powf(1.5) + s * s * s / 6.0;
                 if best.is_none_or(|c| cost < c.cost) {
-                    best = Some(Cut { axis, at, from_low: side, cost });
+                    best = Some(Cut {
+                        axis,
+                        at,
+                        from_low: side,
+                        cost,
+                    });
                 }
             }
         }

@@ -1,5 +1,8 @@
 //! Blocks of `B` vectors (panels) and the dense products between them.
 
+// Small triangular loops read like their formulas with indices, and like nothing with iterators.
+#![allow(clippy::needless_range_loop)]
+
 use super::field::{Field, run};
 
 /// `B` vectors of equal length, stored row by row.

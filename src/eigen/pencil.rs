@@ -47,7 +47,13 @@ impl Pattern {
         let (kp, mp) = (kp.raw_storage(), mp.raw_storage());
         let same = kp == mp && k.indices() == m.indices();
         let krow = |i: usize| &k.indices()[kp[i]..kp[i + 1]];
-        let mrow = |i: usize| if same { &[][..] } else { &m.indices()[mp[i]..mp[i + 1]] };
+        let mrow = |i: usize| {
+            if same {
+                &[][..]
+            } else {
+                &m.indices()[mp[i]..mp[i + 1]]
+            }
+        };
         let order = dissection(places, tail, |i| krow(i).iter().chain(mrow(i)));
         let mut rank = vec![0u32; n];
         for (p, &i) in order.iter().enumerate() {
@@ -84,8 +90,16 @@ impl Pattern {
             } else {
                 let (mut b, b_end) = (mp[i], mp[i + 1]);
                 while a < a_end || b < b_end {
-                    let ja = if a < a_end { k.indices()[a] } else { usize::MAX };
-                    let jb = if b < b_end { m.indices()[b] } else { usize::MAX };
+                    let ja = if a < a_end {
+                        k.indices()[a]
+                    } else {
+                        usize::MAX
+                    };
+                    let jb = if b < b_end {
+                        m.indices()[b]
+                    } else {
+                        usize::MAX
+                    };
                     let ik = if ja <= jb { a as u32 } else { NONE };
                     let im = if jb <= ja { b as u32 } else { NONE };
                     entry(rank[ja.min(jb)], ik, im);
@@ -145,7 +159,10 @@ fn check_shapes<T>(
     if tail > n {
         return shape(format!("a tail of {tail} among {n} unknowns"));
     }
-    if let Some(i) = places.iter().position(|p| !p[0].is_finite() || !p[1].is_finite()) {
+    if let Some(i) = places
+        .iter()
+        .position(|p| !p[0].is_finite() || !p[1].is_finite())
+    {
         return shape(format!("the place of unknown {i} is not finite"));
     }
     if k.nnz().max(m.nnz()) >= NONE as usize || k.nnz() + m.nnz() >= NONE as usize {
@@ -172,7 +189,13 @@ impl<'a, T: Field> Pencil<'a, T> {
     pub fn new(pattern: &'a Pattern, k: &CsMat<T>, m: &CsMat<T>) -> Result<Self, EigenError> {
         let gather = |from: &[u32], data: &[T]| -> Vec<T> {
             from.iter()
-                .map(|&e| if e == NONE { T::default() } else { data[e as usize] })
+                .map(|&e| {
+                    if e == NONE {
+                        T::default()
+                    } else {
+                        data[e as usize]
+                    }
+                })
                 .collect()
         };
         let mut pencil = Self {
@@ -183,11 +206,15 @@ impl<'a, T: Field> Pencil<'a, T> {
         };
         pencil.check(k, "stiffness", &pencil.k)?;
         pencil.check(m, "mass", &pencil.m)?;
-        pencil.mass =
-            (0..pattern.size()).map(|i| pencil.m[pattern.start[i] as usize].re()).collect();
+        pencil.mass = (0..pattern.size())
+            .map(|i| pencil.m[pattern.start[i] as usize].re())
+            .collect();
         if let Some(p) = pencil.mass.iter().position(|&d| d <= 0.0) {
             let unknown = pattern.order[p];
-            let place = format!("the diagonal entry of unknown {unknown}, {:e}", pencil.mass[p]);
+            let place = format!(
+                "the diagonal entry of unknown {unknown}, {:e}",
+                pencil.mass[p]
+            );
             return Err(EigenError::MassNotPositive { place });
         }
         Ok(pencil)
@@ -217,15 +244,25 @@ impl<'a, T: Field> Pencil<'a, T> {
                 size += term.abs2();
             }
             if !size.is_finite() {
-                return Err(EigenError::NotFinite { matrix: name, row: i });
+                return Err(EigenError::NotFinite {
+                    matrix: name,
+                    row: i,
+                });
             }
             off += (sum - T::at(&y[p], 0)).abs2();
             whole += size;
         }
-        let relative = if whole > 0.0 { (off / whole).sqrt() } else { 0.0 };
+        let relative = if whole > 0.0 {
+            (off / whole).sqrt()
+        } else {
+            0.0
+        };
         // Assembly in two orders differs by rounding, 1e-14 or so; a wrong entry by far more.
         if relative > 1e-9 {
-            return Err(EigenError::NotHermitian { matrix: name, relative });
+            return Err(EigenError::NotHermitian {
+                matrix: name,
+                relative,
+            });
         }
         Ok(())
     }

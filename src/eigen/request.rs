@@ -75,7 +75,13 @@ pub fn machine_memory() -> u64 {
     let text = std::fs::read_to_string("/proc/meminfo").unwrap_or_default();
     text.lines()
         .find_map(|line| line.strip_prefix("MemTotal:"))
-        .and_then(|rest| rest.trim().trim_end_matches("kB").trim().parse::<u64>().ok())
+        .and_then(|rest| {
+            rest.trim()
+                .trim_end_matches("kB")
+                .trim()
+                .parse::<u64>()
+                .ok()
+        })
         .map_or(8_000_000_000, |kb| kb * 1024)
 }
 

@@ -73,14 +73,19 @@ pub(super) fn slice<T: Field, const B: usize>(
     let clock = Instant::now();
     factor.at(pencil, end.shift)?;
     spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
-    let mut upper = Bound { value: factor.shift, below: factor.below };
+    let mut upper = Bound {
+        value: factor.shift,
+        below: factor.below,
+    };
     let mut backward = factor.backward;
     let mut verdict = compare(task.lower, upper, levels.iter().map(|l| l.value));
     for round in 0..ROUNDS {
         match verdict {
             Verdict::Whole => break,
             Verdict::Missing(missing) => {
-                let found = repair(factor, pencil, &mut task, &levels, upper, missing, round, spent)?;
+                let found = repair(
+                    factor, pencil, &mut task, &levels, upper, missing, round, spent,
+                )?;
                 if found.is_empty() {
                     break;
                 }
@@ -94,7 +99,10 @@ pub(super) fn slice<T: Field, const B: usize>(
                 let last = levels.iter().map(|l| l.value).filter(|&x| x < upper.value);
                 let last = last.fold(f64::NEG_INFINITY, f64::max);
                 factor.at(pencil, last + 0.6 * (upper.value - last))?;
-                upper = Bound { value: factor.shift, below: factor.below };
+                upper = Bound {
+                    value: factor.shift,
+                    below: factor.below,
+                };
                 backward = backward.max(factor.backward);
             }
         }
@@ -103,7 +111,12 @@ pub(super) fn slice<T: Field, const B: usize>(
     levels.sort_by(|a, b| a.value.total_cmp(&b.value));
     levels.retain(|l| l.value > task.lower.value && l.value < upper.value);
     debug_assert!(levels.len() <= n);
-    Ok(Slice { levels, upper, complete: verdict == Verdict::Whole, backward })
+    Ok(Slice {
+        levels,
+        upper,
+        complete: verdict == Verdict::Whole,
+        backward,
+    })
 }
 
 /// How far a search is.
@@ -127,7 +140,11 @@ struct Judge {
 
 impl Judge {
     fn size(&self, value: f64) -> f64 {
-        let span = if self.lower.is_finite() { self.shift - self.lower } else { self.shift };
+        let span = if self.lower.is_finite() {
+            self.shift - self.lower
+        } else {
+            self.shift
+        };
         value.abs().max(1e-3 * span.abs())
     }
 
@@ -156,11 +173,20 @@ impl Judge {
     fn state(&mut self, estimates: &[Estimate]) -> State {
         let (list, low, next) = self.list(estimates);
         let values: Vec<f64> = list.iter().map(|e| e.value).collect();
-        let end = certificate::end(&values, next, self.want.min(values.len().max(1)), self.cluster);
+        let end = certificate::end(
+            &values,
+            next,
+            self.want.min(values.len().max(1)),
+            self.cluster,
+        );
         let short = self.inside.saturating_sub(low);
         let enough = values.len() + short >= self.want;
         if enough && short > 0 && next.is_some() {
-            self.stalled = if self.stalled.1 == low { (self.stalled.0 + 1, low) } else { (0, low) };
+            self.stalled = if self.stalled.1 == low {
+                (self.stalled.0 + 1, low)
+            } else {
+                (0, low)
+            };
         }
         match end {
             Some(end) if enough && (short == 0 || self.stalled.0 >= 3) => State::Done(end),
@@ -219,7 +245,9 @@ fn search<T: Field, const B: usize>(
                     let keep = keep_panels(task.columns, want, B);
                     let mut by: Vec<&Estimate> = estimates.iter().collect();
                     by.sort_by(|a, b| {
-                        (a.value - judge.shift).abs().total_cmp(&(b.value - judge.shift).abs())
+                        (a.value - judge.shift)
+                            .abs()
+                            .total_cmp(&(b.value - judge.shift).abs())
                     });
                     let chosen: Vec<usize> = by.iter().take(keep * B).map(|e| e.column).collect();
                     run.restart(&eigen, &chosen[..chosen.len() / B * B]);
@@ -274,14 +302,26 @@ fn repair<T: Field, const B: usize>(
     let mut run = Lanczos::<T, B>::start(pencil, factor, &locked, None, seed)?;
     let mut idle = 0;
     loop {
-        task.watch.step(task.done.0 + task.want.min(found.len()), task.done.1, "levels")?;
+        task.watch.step(
+            task.done.0 + task.want.min(found.len()),
+            task.done.1,
+            "levels",
+        )?;
         for _ in 0..2 {
             run.expand()?;
         }
         let (eigen, estimates) = run.ritz()?;
         let inside = |e: &&Estimate| e.value > judge.lower && e.value < upper.value;
-        let good: Vec<&Estimate> = estimates.iter().filter(inside).filter(|e| judge.good(e)).collect();
-        let open = estimates.iter().filter(inside).filter(|e| !judge.good(e)).count();
+        let good: Vec<&Estimate> = estimates
+            .iter()
+            .filter(inside)
+            .filter(|e| judge.good(e))
+            .collect();
+        let open = estimates
+            .iter()
+            .filter(inside)
+            .filter(|e| !judge.good(e))
+            .count();
         let full = run.columns() + 2 * B > task.columns || run.spent;
         idle = if open == 0 { idle + 1 } else { 0 };
         if good.len() >= missing || (idle >= 4 && !good.is_empty()) || idle >= 12 || full {
@@ -301,7 +341,12 @@ pub(super) fn lock<'l, T: Field, const B: usize>(
     let levels: Vec<&Level<T>> = levels.collect();
     let v: Vec<Panel<T, B>> = levels
         .chunks(B)
-        .map(|group| gather(pencil.pattern.size(), group.iter().map(|l| l.vector.as_slice())))
+        .map(|group| {
+            gather(
+                pencil.pattern.size(),
+                group.iter().map(|l| l.vector.as_slice()),
+            )
+        })
         .collect();
     let mv = v
         .iter()
@@ -355,8 +400,86 @@ pub(super) fn measure<T: Field, const B: usize>(
             }
             let vector = v.iter().map(|row| T::at(row, c).scale(norm)).collect();
             let size = value.abs().max(f64::MIN_POSITIVE);
-            levels.push(Level { value, residual: r.sqrt() * norm / size, vector });
+            levels.push(Level {
+                value,
+                residual: r.sqrt() * norm / size,
+                vector,
+            });
         }
     }
     levels
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::certificate::BOTTOM;
+    use super::super::factor::Symbolic;
+    use super::super::pencil::Pattern;
+    use super::*;
+    use sprs::{CsMat, TriMat};
+
+    /// A square grid of springs of uneven strength: no two levels alike, no mass but one.
+    fn grid(side: usize) -> (CsMat<f64>, CsMat<f64>, Vec<[f64; 2]>) {
+        let n = side * side;
+        let mut k = TriMat::new((n, n));
+        for i in 0..n {
+            k.add_triplet(i, i, 1.0 + 1e-3 * (i as f64 * 0.7).sin());
+            for (to, there) in [(i + 1, (i + 1) % side != 0), (i + side, i + side < n)] {
+                if there {
+                    k.add_triplet(i, to, -0.25);
+                    k.add_triplet(to, i, -0.25);
+                }
+            }
+        }
+        let places = (0..n)
+            .map(|i| [(i % side) as f64, (i / side) as f64])
+            .collect();
+        (k.to_csr(), CsMat::eye(n), places)
+    }
+
+    fn task(known: Locked<f64, 4>, watch: &Watch) -> Task<'_, f64, 4> {
+        Task {
+            lower: BOTTOM,
+            want: 12,
+            top: 0.12,
+            tolerance: 1e-8,
+            cluster: 1e-6,
+            columns: 80,
+            known,
+            start: None,
+            watch,
+            done: (0, 12),
+        }
+    }
+
+    #[test]
+    fn deliberate_misses_are_caught() {
+        let (k, m, places) = grid(20);
+        let pattern = Pattern::new(&k, &m, &places, 0).expect("the grid fits together");
+        let symbolic = Symbolic::new(&pattern).expect("the grid is small");
+        let pencil = Pencil::new(&pattern, &k, &m).expect("the grid is sound");
+        let mut factor = Factor::new(&symbolic);
+        let watch = Watch::quiet();
+        let mut spent = Spent::default();
+        let all = slice(
+            &mut factor,
+            &pencil,
+            task(Locked::default(), &watch),
+            &mut spent,
+        )
+        .expect("the grid is solved");
+        assert!(all.complete && all.levels.len() >= 12);
+        for hidden in 0..11 {
+            // A level that the process is kept away from, and that nobody counted.
+            let known = lock::<f64, 4>(&pencil, std::iter::once(&all.levels[hidden]));
+            let part = slice(&mut factor, &pencil, task(known, &watch), &mut spent)
+                .expect("the grid is solved");
+            assert!(
+                !part.complete,
+                "level {hidden} was hidden, and the count did not notice"
+            );
+            let verdict = compare(BOTTOM, part.upper, part.levels.iter().map(|l| l.value));
+            assert_eq!(verdict, Verdict::Missing(1));
+        }
+    }
 }

@@ -27,12 +27,15 @@ impl Layout<'_> {
     /// First and one past the last column of supernode `s`.
     #[inline(always)]
     pub fn columns(&self, s: usize) -> (usize, usize) {
-        (if s == 0 { 0 } else { self.end[s - 1] as usize }, self.end[s] as usize)
+        (
+            if s == 0 { 0 } else { self.end[s - 1] as usize },
+            self.end[s] as usize,
+        )
     }
 }
 
 #[inline(always)]
-fn columns<'a, T, const G: usize>(block: &'a [T], high: usize, j: usize) -> [&'a [T]; G] {
+fn columns<T, const G: usize>(block: &[T], high: usize, j: usize) -> [&[T]; G] {
     std::array::from_fn(|q| &block[(j + q) * high..(j + q + 1) * high])
 }
 

@@ -22,15 +22,24 @@ pub(super) fn settle<T: Field>(
     want: usize,
     top: f64,
 ) -> Result<(), EigenError> {
-    let mut base = if lower.value.is_finite() { lower.value } else { 0.0 };
-    let mut span = if top > base && top.is_finite() { top - base } else { 1.0 };
+    let mut base = if lower.value.is_finite() {
+        lower.value
+    } else {
+        0.0
+    };
+    let mut span = if top > base && top.is_finite() {
+        top - base
+    } else {
+        1.0
+    };
     if lower.value.is_infinite() && top < 0.0 {
         base = 2.0 * top;
         span = -top;
     }
     let start = base;
     // Counts at the two ends of where the shift may be.
-    let (mut low, mut high): (Option<(f64, f64)>, Option<(f64, f64)>) = (None, None);
+    let mut low: Option<(f64, f64)> = None;
+    let mut high: Option<(f64, f64)> = None;
     if lower.value.is_finite() {
         low = Some((base, 0.0));
     }
@@ -39,7 +48,11 @@ pub(super) fn settle<T: Field>(
         factor.at(pencil, sigma)?;
         let inside = factor.below as f64 - lower.below as f64;
         let share = inside / want as f64;
-        let fine = if want <= 3 { (0.0..=1.0).contains(&share) } else { MIDDLE.contains(&share) };
+        let fine = if want <= 3 {
+            (0.0..=1.0).contains(&share)
+        } else {
+            MIDDLE.contains(&share)
+        };
         if fine || (round >= CORRECTIONS && (0.05..=1.0).contains(&share)) {
             return Ok(());
         }
@@ -65,7 +78,11 @@ pub(super) fn settle<T: Field>(
                 } else {
                     4.0
                 };
-                if a > start { start + (a - start) * grow } else { start + span }
+                if a > start {
+                    start + (a - start) * grow
+                } else {
+                    start + span
+                }
             }
             (None, Some((b, fb))) => {
                 let shrink = goal / fb.max(1.0);
@@ -111,9 +128,12 @@ pub(super) fn weyl<T: Field>(
             }
         }
     }
-    let area: f64 =
-        (0..n).filter(|&i| (p.order[i] as usize) < inner).map(|i| nearest[i]).filter(|d| d.is_finite()).sum();
-    if !(area > 0.0) {
+    let area: f64 = (0..n)
+        .filter(|&i| (p.order[i] as usize) < inner)
+        .map(|i| nearest[i])
+        .filter(|d| d.is_finite())
+        .sum();
+    if area <= 0.0 {
         return f64::NAN;
     }
     // A wave of about two periods across.
@@ -143,9 +163,8 @@ pub(super) fn weyl<T: Field>(
         .step_by((n / 400).max(1))
         .filter_map(|i| {
             // The part of each sum in phase with the wave at i.
-            let along = |part: usize| {
-                (sums[i][part] * wave[i][0] + sums[i][part + 1] * wave[i][1]).re()
-            };
+            let along =
+                |part: usize| (sums[i][part] * wave[i][0] + sums[i][part + 1] * wave[i][1]).re();
             let ratio = along(0) / along(2);
             (ratio.is_finite() && ratio > 0.0).then_some(ratio)
         })

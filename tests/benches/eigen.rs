@@ -28,7 +28,12 @@ fn cold(bencher: Bencher, (p, cells, count): (usize, usize, usize)) {
     let pencil = pencils::square(p, cells);
     let settings = Settings::new(Window::Lowest(count));
     bencher.bench_local(|| {
-        let found = solve_with(&mut Plan::new(), &pencil.problem(), &settings, &Watch::quiet());
+        let found = solve_with(
+            &mut Plan::new(),
+            &pencil.problem(),
+            &settings,
+            &Watch::quiet(),
+        );
         black_box(found.expect("the square is solved"))
     });
 }
@@ -56,8 +61,13 @@ fn drafted(bencher: Bencher, (p, cells, count): (usize, usize, usize)) {
     let before = solve_with(&mut plan, &pencil.problem(), &settings, &Watch::quiet())
         .expect("the square is solved");
     bencher.bench_local(|| {
-        let quick =
-            draft(&mut plan, &pencil.problem(), &before.vectors, &before.values, &Watch::quiet());
+        let quick = draft(
+            &mut plan,
+            &pencil.problem(),
+            &before.vectors,
+            &before.values,
+            &Watch::quiet(),
+        );
         black_box(quick.expect("the square is drafted"))
     });
 }

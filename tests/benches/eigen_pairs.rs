@@ -24,7 +24,10 @@ fn npy(path: &str, descr: &str, len: usize, bytes: impl Iterator<Item = [u8; 8]>
 }
 
 fn main() {
-    let args: Vec<String> = std::env::args().skip(1).filter(|a| !a.starts_with("--")).collect();
+    let args: Vec<String> = std::env::args()
+        .skip(1)
+        .filter(|a| !a.starts_with("--"))
+        .collect();
     if args.len() < 5 {
         eprintln!("usage: eigen_pairs DEGREE CELLS LEVELS TOLERANCE DIRECTORY");
         return;
@@ -38,15 +41,33 @@ fn main() {
     if args[4] != "-" {
         let dir = &args[4];
         for (name, a) in [("k", &pencil.stiffness), ("m", &pencil.mass)] {
-            let ints = |v: &[usize]| v.iter().map(|&x| (x as i64).to_le_bytes()).collect::<Vec<_>>();
+            let ints = |v: &[usize]| {
+                v.iter()
+                    .map(|&x| (x as i64).to_le_bytes())
+                    .collect::<Vec<_>>()
+            };
             let (indptr, indices) = (ints(&a.indptr().to_proper()), ints(a.indices()));
-            npy(&format!("{dir}/{name}_indptr.npy"), "<i8", indptr.len(), indptr.into_iter());
-            npy(&format!("{dir}/{name}_indices.npy"), "<i8", indices.len(), indices.into_iter());
+            npy(
+                &format!("{dir}/{name}_indptr.npy"),
+                "<i8",
+                indptr.len(),
+                indptr.into_iter(),
+            );
+            npy(
+                &format!("{dir}/{name}_indices.npy"),
+                "<i8",
+                indices.len(),
+                indices.into_iter(),
+            );
             let data = a.data().iter().map(|x| x.to_le_bytes());
             npy(&format!("{dir}/{name}_data.npy"), "<f8", a.nnz(), data);
         }
     }
-    println!("{{\"n\": {}, \"nnz\": {}}}", pencil.stiffness.rows(), pencil.stiffness.nnz());
+    println!(
+        "{{\"n\": {}, \"nnz\": {}}}",
+        pencil.stiffness.rows(),
+        pencil.stiffness.nnz()
+    );
     let mut settings = Settings::new(Window::Lowest(number(2)));
     settings.tolerance = args[3].parse().expect("a tolerance");
     let mut before: Option<(Vec<Vec<f64>>, f64)> = None;
@@ -73,8 +94,15 @@ fn main() {
                     "{{\"ms\": {ms:.3}, \"plan_ms\": {:.3}, \"factor_ms\": {:.3}, \"solve_ms\": {:.3}, \
                      \"solves\": {}, \"factorisations\": {}, \"length\": {}, \"complete\": {}, \
                      \"residual\": {worst:.1e}, \"last\": {:.15e}, \"memory\": {}}}",
-                    e.plan_ms, e.factor_ms, e.solve_ms, e.solves, e.factorisations,
-                    e.factor_length, found.count.complete, found.values.last().copied().unwrap_or(0.0), e.memory
+                    e.plan_ms,
+                    e.factor_ms,
+                    e.solve_ms,
+                    e.solves,
+                    e.factorisations,
+                    e.factor_length,
+                    found.count.complete,
+                    found.values.last().copied().unwrap_or(0.0),
+                    e.memory
                 );
                 before = Some((found.vectors, found.values.last().copied().unwrap_or(0.0)));
             }

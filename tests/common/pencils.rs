@@ -58,7 +58,10 @@ fn gauss(n: usize) -> Vec<(f64, f64)> {
             for _ in 0..100 {
                 let (mut a, mut b) = (1.0, x);
                 for k in 2..=n {
-                    (a, b) = (b, ((2 * k - 1) as f64 * x * b - (k - 1) as f64 * a) / k as f64);
+                    (a, b) = (
+                        b,
+                        ((2 * k - 1) as f64 * x * b - (k - 1) as f64 * a) / k as f64,
+                    );
                 }
                 slope = n as f64 * (x * b - a) / (x * x - 1.0);
                 x -= b / slope;
@@ -87,10 +90,15 @@ fn line(p: usize, cells: usize) -> (Vec<Vec<f64>>, Vec<Vec<f64>>, Vec<f64>) {
         }
     }
     let cut = |a: Vec<Vec<f64>>| -> Vec<Vec<f64>> {
-        a[1..all - 1].iter().map(|r| r[1..all - 1].to_vec()).collect()
+        a[1..all - 1]
+            .iter()
+            .map(|r| r[1..all - 1].to_vec())
+            .collect()
     };
     let greville = |i: usize| {
-        (1..=p).map(|r| ((i + r) as f64 - p as f64).clamp(0.0, cells as f64)).sum::<f64>()
+        (1..=p)
+            .map(|r| ((i + r) as f64 - p as f64).clamp(0.0, cells as f64))
+            .sum::<f64>()
             / (p * cells) as f64
     };
     (cut(k), cut(m), (1..all - 1).map(greville).collect())
@@ -122,14 +130,18 @@ pub fn square(p: usize, cells: usize) -> Pencil<f64> {
     Pencil {
         stiffness: CsMat::new((n, n), indptr.clone(), indices.clone(), kd),
         mass: CsMat::new((n, n), indptr, indices, md),
-        places: x.iter().flat_map(|&a| x.iter().map(move |&b| [a, b])).collect(),
+        places: x
+            .iter()
+            .flat_map(|&a| x.iter().map(move |&b| [a, b]))
+            .collect(),
     }
 }
 
 /// The lowest `count` of π²(i² + j²).
 pub fn square_levels(count: usize) -> Vec<f64> {
-    let mut all: Vec<usize> =
-        (1..=count).flat_map(|i| (1..=count / i + 1).map(move |j| i * i + j * j)).collect();
+    let mut all: Vec<usize> = (1..=count)
+        .flat_map(|i| (1..=count / i + 1).map(move |j| i * i + j * j))
+        .collect();
     // Enough of them: extend to a full square in i and j.
     let side = 2 + (2.0 * (count as f64).sqrt()) as usize + 8;
     all.clear();
@@ -170,7 +182,9 @@ pub fn five_point(a: usize, b: usize) -> Pencil<f64> {
     Pencil {
         stiffness: CsMat::new((n, n), indptr, indices, data),
         mass: CsMat::eye(n),
-        places: (0..n).map(|id| [(id / b) as f64, (id % b) as f64]).collect(),
+        places: (0..n)
+            .map(|id| [(id / b) as f64, (id % b) as f64])
+            .collect(),
     }
 }
 
@@ -187,7 +201,11 @@ pub fn torus(a: usize, b: usize, flux: usize) -> Pencil<Complex64> {
             k.add_triplet(id, id, Complex64::new(1.0, 0.0));
             let right = ((x + 1) % a) * b + y;
             // Landau gauge; the seam carries what makes the flux through every cell the same.
-            let seam = if x + 1 == a { -alpha * (a * y) as f64 } else { 0.0 };
+            let seam = if x + 1 == a {
+                -alpha * (a * y) as f64
+            } else {
+                0.0
+            };
             let up = x * b + (y + 1) % b;
             for (to, phase) in [(right, seam), (up, alpha * x as f64)] {
                 let hop = Complex64::from_polar(-0.25, phase);
@@ -199,7 +217,9 @@ pub fn torus(a: usize, b: usize, flux: usize) -> Pencil<Complex64> {
     Pencil {
         stiffness: k.to_csr(),
         mass: CsMat::eye(n),
-        places: (0..n).map(|id| [(id / b) as f64, (id % b) as f64]).collect(),
+        places: (0..n)
+            .map(|id| [(id / b) as f64, (id % b) as f64])
+            .collect(),
     }
 }
 
@@ -208,7 +228,10 @@ pub struct Dice(pub u64);
 
 impl Dice {
     pub fn roll(&mut self) -> f64 {
-        self.0 = self.0.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        self.0 = self
+            .0
+            .wrapping_mul(6_364_136_223_846_793_005)
+            .wrapping_add(1_442_695_040_888_963_407);
         (self.0 >> 11) as f64 / (1u64 << 52) as f64 - 1.0
     }
 }
@@ -232,8 +255,16 @@ pub fn random(n: usize, neighbours: usize, definite: bool, seed: u64) -> Pencil<
         }
         a.to_csr()
     };
-    let stiffness: CsMat<f64> = if definite { build(3.0, 1.5) } else { build(0.0, 2.0) };
+    let stiffness: CsMat<f64> = if definite {
+        build(3.0, 1.5)
+    } else {
+        build(0.0, 2.0)
+    };
     let mass = build(2.0, 0.5);
     let places = (0..n).map(|_| [dice.roll(), dice.roll()]).collect();
-    Pencil { stiffness, mass, places }
+    Pencil {
+        stiffness,
+        mass,
+        places,
+    }
 }
