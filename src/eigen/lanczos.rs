@@ -51,6 +51,9 @@ pub(super) struct Lanczos<'a, T: Field, const B: usize> {
     pub solves: usize,
     /// The space is exhausted: nothing new can be added.
     pub spent: bool,
+    /// The largest factor by which the operator has stretched a vector: at most one over the
+    /// distance from the shift to the nearest level.
+    pub stretch: f64,
 }
 
 impl<'a, T: Field, const B: usize> Lanczos<'a, T, B> {
@@ -76,6 +79,7 @@ impl<'a, T: Field, const B: usize> Lanczos<'a, T, B> {
             work: Vec::new(),
             solves: 0,
             spent: false,
+            stretch: 0.0,
             noise: Noise::new(seed + 1),
         };
         let given = block.is_some();
@@ -131,6 +135,7 @@ impl<'a, T: Field, const B: usize> Lanczos<'a, T, B> {
         let h = gram::<T, B>(&mv, &w);
         let minus: Vec<_> = h.iter().map(negative::<T, B>).collect();
         let whole = squared_norms::<T, B>(&h);
+        self.stretch = self.stretch.max(whole.sqrt());
         update::<T, B>(&mut w, &self.v[near..].iter().collect::<Vec<_>>(), &minus);
         column[near..].copy_from_slice(&h);
         self.clear(&mut w, Some(&mut column));

@@ -61,7 +61,7 @@ const ROUNDS: usize = 64;
 pub(super) fn slice<T: Field, const B: usize>(
     factor: &mut Factor<'_, T>,
     pencil: &Pencil<'_, T>,
-    mut task: Task<'_, T, B>,
+    task: Task<'_, T, B>,
     spent: &mut Spent,
 ) -> Result<Slice<T>, EigenError> {
     let n = pencil.pattern.size();
@@ -69,7 +69,23 @@ pub(super) fn slice<T: Field, const B: usize>(
     window::settle(factor, pencil, task.lower, task.want, task.top)?;
     spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
 
-    let (mut levels, end) = search(factor, pencil, &mut task, spent)?;
+    let mut moves = 0;
+    let (mut levels, end) = loop {
+        if let Some(found) = search(factor, pencil, &task, moves < MOVES, spent)? {
+            break found;
+        }
+        // Off the level, by steps that grow until they are of the order of a spacing.
+        moves += 1;
+        let base = if task.lower.value.is_finite() {
+            task.lower.value
+        } else {
+            0.0
+        };
+        let step = 2e-4 * 5f64.powi(moves) * (factor.shift - base).abs();
+        let clock = Instant::now();
+        factor.at(pencil, factor.shift + step)?;
+        spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
+    };
     let clock = Instant::now();
     factor.at(pencil, end.shift)?;
     spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
@@ -83,9 +99,7 @@ pub(super) fn slice<T: Field, const B: usize>(
         match verdict {
             Verdict::Whole => break,
             Verdict::Missing(missing) => {
-                let found = repair(
-                    factor, pencil, &mut task, &levels, upper, missing, round, spent,
-                )?;
+                let found = repair(factor, pencil, &task, &levels, upper, missing, round, spent)?;
                 if found.is_empty() {
                     break;
                 }
@@ -118,6 +132,11 @@ pub(super) fn slice<T: Field, const B: usize>(
         backward,
     })
 }
+
+/// Times a shift may be moved off a level, and how near is too near: the distance over the shift.
+/// Each decade nearer costs a digit of all other levels.
+const MOVES: i32 = 3;
+const NEAR: f64 = 1e-7;
 
 /// How far a search is.
 enum State {
@@ -195,13 +214,15 @@ impl Judge {
     }
 }
 
-/// The main Lanczos run, at the shift the factor stands at.
+/// The main Lanczos run, at the shift the factor stands at. None: that is too near to a level,
+/// and `movable`.
 fn search<T: Field, const B: usize>(
     factor: &Factor<'_, T>,
     pencil: &Pencil<'_, T>,
-    task: &mut Task<'_, T, B>,
+    task: &Task<'_, T, B>,
+    movable: bool,
     spent: &mut Spent,
-) -> Result<(Vec<Level<T>>, End), EigenError> {
+) -> Result<Option<(Vec<Level<T>>, End)>, EigenError> {
     let mut judge = Judge {
         lower: task.lower.value,
         shift: factor.shift,
@@ -212,7 +233,7 @@ fn search<T: Field, const B: usize>(
         stalled: (0, 0),
     };
     let warm = task.start.is_some();
-    let mut run = Lanczos::<T, B>::start(pencil, factor, &task.known, task.start.take(), 1)?;
+    let mut run = Lanczos::<T, B>::start(pencil, factor, &task.known, task.start.clone(), 1)?;
     let want = task.want.max(judge.inside);
     // The first look comes when about this many columns usually do; measured on splines.
     let digits = -task.tolerance.log10();
@@ -223,6 +244,11 @@ fn search<T: Field, const B: usize>(
     loop {
         task.watch.step(task.done.0 + seen, task.done.1, "levels")?;
         run.expand()?;
+        if movable && run.columns() <= 2 * B && run.stretch * judge.size(factor.shift) * NEAR > 1.0
+        {
+            spent.solves += run.solves;
+            return Ok(None);
+        }
         let full = run.columns() + B > task.columns || run.spent;
         if run.columns() < look && !full {
             continue;
@@ -263,7 +289,7 @@ fn search<T: Field, const B: usize>(
             .map(|e| e.column)
             .collect();
         let found = run.vectors(&eigen, &chosen);
-        return Ok((measure::<T, B>(pencil, &found, chosen.len()), end));
+        return Ok(Some((measure::<T, B>(pencil, &found, chosen.len()), end)));
     }
 }
 
@@ -279,7 +305,7 @@ fn keep_panels(columns: usize, want: usize, block: usize) -> usize {
 fn repair<T: Field, const B: usize>(
     factor: &Factor<'_, T>,
     pencil: &Pencil<'_, T>,
-    task: &mut Task<'_, T, B>,
+    task: &Task<'_, T, B>,
     found: &[Level<T>],
     upper: Bound,
     missing: usize,
