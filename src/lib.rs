@@ -4,11 +4,17 @@
 //! `units → progress → geometry → intake → shape → lattice → operators → eigen → spectrum →
 //! modes → figures → pictures → report → desk, cli`.
 
+pub mod cli;
+pub mod desk;
 pub mod eigen;
 pub mod geometry;
+pub mod intake;
 pub mod lattice;
 pub mod modes;
 pub mod operators;
+pub mod pictures;
 pub mod progress;
+pub mod report;
+pub mod shape;
 pub mod spectrum;
 pub mod units;

@@ -51,6 +51,8 @@ pub(super) struct End {
     pub keep: usize,
     /// The shift in it.
     pub shift: f64,
+    /// The level above it, as far as it is known.
+    pub next: f64,
 }
 
 /// Longest group a window is stretched for before the widest gap seen is taken.
@@ -71,10 +73,21 @@ pub(super) fn end(levels: &[f64], next: Option<f64>, want: usize, cluster: f64) 
         let shift = last + (0.5 * gap).min(5.0 * cluster * size.max(f64::MIN_POSITIVE));
         if shift > last && shift < after {
             if gap > cluster * size {
-                return Some(End { keep, shift });
+                return Some(End {
+                    keep,
+                    shift,
+                    next: after,
+                });
             }
             if widest.is_none_or(|(g, _)| gap / size > g) {
-                widest = Some((gap / size, End { keep, shift }));
+                widest = Some((
+                    gap / size,
+                    End {
+                        keep,
+                        shift,
+                        next: after,
+                    },
+                ));
             }
         }
         if keep >= want + STRETCH {

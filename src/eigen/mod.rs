@@ -9,12 +9,14 @@
 //! `certificate` compares them with the inertia above the last; `slice` holds these together,
 //! `solve` cuts long windows into slices.
 
+mod blocks;
 mod certificate;
 mod dense;
 mod draft;
 mod error;
 mod factor;
 mod field;
+mod inverse;
 mod lanczos;
 mod matvec;
 mod order;
@@ -26,8 +28,10 @@ mod solve;
 mod triangular;
 mod window;
 
+pub use blocks::{combine, project, symmetric_eigen};
 pub use draft::{Drafted, draft};
 pub use error::EigenError;
 pub use field::Field;
+pub use inverse::with_inverse;
 pub use request::{Count, Effort, Found, Problem, Settings, Window, machine_memory};
 pub use solve::{Plan, count_below, solve, solve_with};

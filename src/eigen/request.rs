@@ -135,6 +135,8 @@ pub struct Found<T> {
     /// Certified levels just beyond the last one asked for, up to the gap of the count: the rest
     /// of a group that the window's end cuts.
     pub beyond: Vec<f64>,
+    /// The level after those, above the shift of the count: a lower estimate, not certified.
+    pub next: Option<f64>,
     /// The proof.
     pub count: Count,
     /// The cost.

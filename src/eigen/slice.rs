@@ -24,6 +24,8 @@ pub(super) struct Slice<T> {
     /// Ascending, all below `upper`.
     pub levels: Vec<Level<T>>,
     pub upper: Bound,
+    /// The level above `upper`, as far as it is known.
+    pub next: Option<f64>,
     pub complete: bool,
     /// Worst backward error of the counts.
     pub backward: f64,
@@ -128,6 +130,7 @@ pub(super) fn slice<T: Field, const B: usize>(
     Ok(Slice {
         levels,
         upper,
+        next: Some(end.next).filter(|&x| x > upper.value),
         complete: verdict == Verdict::Whole,
         backward,
     })
@@ -214,6 +217,9 @@ impl Judge {
     }
 }
 
+/// Levels and where they end.
+type Harvest<T> = (Vec<Level<T>>, End);
+
 /// The main Lanczos run, at the shift the factor stands at. None: that is too near to a level,
 /// and `movable`.
 fn search<T: Field, const B: usize>(
@@ -222,7 +228,7 @@ fn search<T: Field, const B: usize>(
     task: &Task<'_, T, B>,
     movable: bool,
     spent: &mut Spent,
-) -> Result<Option<(Vec<Level<T>>, End)>, EigenError> {
+) -> Result<Option<Harvest<T>>, EigenError> {
     let mut judge = Judge {
         lower: task.lower.value,
         shift: factor.shift,

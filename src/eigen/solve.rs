@@ -210,6 +210,7 @@ fn wide<T: Field, const B: usize>(
     Ok(Found {
         first_index: lower.below + 1,
         beyond: rest.iter().map(|l| l.value).collect(),
+        next: whole.next,
         count: Count {
             shift: whole.upper.value,
             below: whole.upper.below,
@@ -300,6 +301,7 @@ fn sliced<T: Field, const B: usize>(
     let mut all = Slice {
         levels: Vec::new(),
         upper: bottom,
+        next: None,
         complete: true,
         backward: 0.0,
     };
@@ -368,6 +370,7 @@ fn sliced<T: Field, const B: usize>(
         width = Some((part.upper.value - base) / part.levels.len() as f64);
         all.levels.extend(part.levels);
         all.upper = part.upper;
+        all.next = part.next;
         all.complete &= part.complete;
         all.backward = all.backward.max(part.backward);
     }
@@ -457,6 +460,7 @@ fn all_dense<T: Field>(
     Ok(Slice {
         levels,
         upper,
+        next: eigen.values.get(first + keep).copied(),
         complete: verdict == super::certificate::Verdict::Whole,
         backward: factor.backward,
     })

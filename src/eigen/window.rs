@@ -120,6 +120,9 @@ pub(super) fn weyl<T: Field>(
     for i in 0..n {
         for e in p.start[i] as usize + 1..p.start[i + 1] as usize {
             let j = p.columns[e] as usize;
+            if p.order[i].max(p.order[j]) as usize >= inner {
+                continue;
+            }
             let (a, b) = (place(i), place(j));
             let d = (a[0] - b[0]).powi(2) + (a[1] - b[1]).powi(2);
             if d > 0.0 {

@@ -1,8 +1,8 @@
 //! Closed loops of pieces, and what can be measured on them.
 
 use super::piece::Piece;
-use super::point::{Box2, Point, pt};
-use std::f64::consts::{PI, TAU};
+use super::point::{Box2, Point};
+use std::f64::consts::PI;
 
 /// A closed loop of pieces, each starting where the one before ends.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -35,41 +35,6 @@ pub struct Corner {
 }
 
 impl Outline {
-    /// A polygon from its vertices in order, either way round.
-    pub fn polygon(vertices: &[Point]) -> Self {
-        let n = vertices.len();
-        let twice: f64 = (0..n)
-            .map(|i| vertices[i].cross(vertices[(i + 1) % n]))
-            .sum();
-        let mut v = vertices.to_vec();
-        if twice < 0.0 {
-            v.reverse();
-        }
-        let pieces = (0..n)
-            .map(|i| Piece::Line {
-                from: v[i],
-                to: v[(i + 1) % n],
-            })
-            .collect();
-        Self {
-            loops: vec![Loop { pieces }],
-        }
-    }
-
-    /// A disc.
-    pub fn disc(centre: Point, radius: f64) -> Self {
-        Self {
-            loops: vec![Loop {
-                pieces: vec![Piece::Arc {
-                    centre,
-                    radius,
-                    start: 0.0,
-                    sweep: TAU,
-                }],
-            }],
-        }
-    }
-
     /// Box around the outline.
     pub fn bounds(&self) -> Box2 {
         let mut b = Box2::EMPTY;
@@ -93,13 +58,13 @@ impl Outline {
             let n = l.pieces.len();
             for k in 0..n {
                 let (before, after) = (&l.pieces[(k + n - 1) % n], &l.pieces[k]);
-                let (a, b) = (before.velocity(1.0), after.velocity(0.0));
-                let turn = a.cross(b).atan2(a.dot(b));
+                let turn = turn_between(before, after);
+                let b = after.tangent(0.0);
                 if turn.abs() > tolerance {
                     out.push(Corner {
                         at: after.start(),
                         angle: PI - turn,
-                        direction: b.y.atan2(b.x),
+                        direction: b.angle(),
                         curvatures: [before.curvature(1.0), after.curvature(0.0)],
                         place: (i, k),
                     });
@@ -110,13 +75,33 @@ impl Outline {
     }
 }
 
+/// Angle by which the direction turns from the end of one piece to the start of the next,
+/// radians in [−π, π], positive to the left.
+///
+/// At a cusp the two half turns differ by which side is the thin one; there the curvatures tell.
+pub(super) fn turn_between(before: &Piece, after: &Piece) -> f64 {
+    let (a, b) = (before.tangent(1.0), after.tangent(0.0));
+    let turn = a.cross(b).atan2(a.dot(b));
+    if turn.abs() < PI - 1e-9 {
+        return turn;
+    }
+    // Seen from the tip, the way back bends by −κ; if it lies to the left, the tip is material.
+    if -before.curvature(1.0) >= after.curvature(0.0) {
+        PI
+    } else {
+        -PI
+    }
+}
+
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
+    use super::super::point::pt;
     use super::*;
 
     #[test]
     fn a_square_has_four_right_angles() {
-        let q = Outline::polygon(&[pt(0., 0.), pt(1., 0.), pt(1., 1.), pt(0., 1.)]);
+        let q = Outline::rectangle(pt(0., 0.), pt(1., 1.)).unwrap();
         let c = q.corners(1e-9);
         assert_eq!(c.len(), 4);
         assert!(c.iter().all(|c| (c.angle - PI / 2.0).abs() < 1e-15));

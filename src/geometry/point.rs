@@ -33,6 +33,27 @@ impl Point {
     pub fn left(self) -> Self {
         pt(-self.y, self.x)
     }
+    /// Unit vector of the same direction; a zero vector stays zero.
+    pub fn unit(self) -> Self {
+        let n = self.norm();
+        if n > 0.0 { self * (1.0 / n) } else { self }
+    }
+    /// The vector turned by the angle of the unit vector `e` (a product of complex numbers).
+    pub fn turned(self, e: Self) -> Self {
+        pt(self.x * e.x - self.y * e.y, self.x * e.y + self.y * e.x)
+    }
+    /// Mirror image in the x axis (the complex conjugate).
+    pub fn conj(self) -> Self {
+        pt(self.x, -self.y)
+    }
+    /// Angle of the vector, radians in (−π, π].
+    pub fn angle(self) -> f64 {
+        self.y.atan2(self.x)
+    }
+    /// Whether both coordinates are numbers.
+    pub fn is_finite(self) -> bool {
+        self.x.is_finite() && self.y.is_finite()
+    }
     /// Coordinate 0 (x) or 1 (y).
     pub fn axis(self, axis: usize) -> f64 {
         if axis == 0 { self.x } else { self.y }
@@ -68,6 +89,22 @@ impl Neg for Point {
     }
 }
 
+/// Unit vector of an angle, exact at the multiples of a right angle, so that turning by 90°
+/// keeps upright edges upright.
+pub(super) fn exact_polar(angle: f64) -> Point {
+    let quarter = angle / std::f64::consts::FRAC_PI_2;
+    let k = quarter.round();
+    if (quarter - k).abs() > 4.0 * f64::EPSILON * k.abs().max(1.0) {
+        return Point::polar(angle);
+    }
+    match k.rem_euclid(4.0) as u8 {
+        0 => pt(1.0, 0.0),
+        1 => pt(0.0, 1.0),
+        2 => pt(-1.0, 0.0),
+        _ => pt(0.0, -1.0),
+    }
+}
+
 /// An axis-parallel box.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Box2 {
@@ -99,5 +136,26 @@ impl Box2 {
     /// Centre.
     pub fn centre(&self) -> Point {
         (self.lo + self.hi) * 0.5
+    }
+    /// The box with `margin` added on every side.
+    pub fn widened(&self, margin: f64) -> Self {
+        let m = pt(margin, margin);
+        Self {
+            lo: self.lo - m,
+            hi: self.hi + m,
+        }
+    }
+    /// Whether the boxes share a point.
+    pub fn meets(&self, o: &Self) -> bool {
+        self.lo.x <= o.hi.x && o.lo.x <= self.hi.x && self.lo.y <= o.hi.y && o.lo.y <= self.hi.y
+    }
+    /// Whether `p` is in the closed box.
+    pub fn holds(&self, p: Point) -> bool {
+        self.lo.x <= p.x && p.x <= self.hi.x && self.lo.y <= p.y && p.y <= self.hi.y
+    }
+    /// Distance of `p` from the box, 0 inside.
+    pub fn distance(&self, p: Point) -> f64 {
+        let d = |lo: f64, v: f64, hi: f64| (lo - v).max(v - hi).max(0.0);
+        d(self.lo.x, p.x, self.hi.x).hypot(d(self.lo.y, p.y, self.hi.y))
     }
 }

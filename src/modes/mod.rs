@@ -2,43 +2,57 @@
 //!
 //! Enters: the lattice and vectors. Leaves: values of normalised functions. Knows no pictures.
 
-use crate::geometry::{Outline, Point};
+mod raster;
 
-/// A rectangular raster of sample points: column i, row j sits at
-/// `origin + step (i, j)`; row 0 is the lowest.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Raster {
-    /// The lower left sample point.
-    pub origin: Point,
-    /// Distance of neighbouring points along x and y.
-    pub step: Point,
-    /// Columns.
-    pub width: usize,
-    /// Rows.
-    pub height: usize,
-}
+pub use raster::Raster;
+
+use crate::geometry::{Outline, Point};
+use crate::lattice::{Cell, CornerSpace, Key, Lattice, Value, spline};
+use crate::operators::Functions;
+use std::sync::Arc;
 
 /// The modes of one spectrum, each normalised to ∫|ψ|² = 1 (ψ in 1/length).
 #[derive(Clone, Debug)]
 pub struct Modes {
-    outline: Outline,
-    numbers: Vec<(usize, usize)>,
+    outline: Arc<Outline>,
+    lattice: Arc<Lattice>,
+    corners: Arc<Vec<CornerSpace>>,
+    functions: Arc<Functions>,
+}
+
+/// ψ and ∇ψ at a point.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Psi {
+    /// ψ.
+    pub value: f64,
+    /// ∇ψ.
+    pub gradient: Point,
 }
 
 impl Modes {
-    /// Placeholder: box modes on the bounding box.
-    pub fn placeholder(outline: Outline, numbers: Vec<(usize, usize)>) -> Self {
-        Self { outline, numbers }
+    /// Modes from coefficients on a lattice; `functions` holds them normalised.
+    pub fn new(
+        outline: Outline,
+        lattice: Arc<Lattice>,
+        corners: Arc<Vec<CornerSpace>>,
+        functions: Functions,
+    ) -> Self {
+        Self {
+            outline: Arc::new(outline),
+            lattice,
+            corners,
+            functions: Arc::new(functions),
+        }
     }
 
     /// Number of modes.
     pub fn len(&self) -> usize {
-        self.numbers.len()
+        self.functions.count
     }
 
     /// Whether there is none.
     pub fn is_empty(&self) -> bool {
-        self.numbers.is_empty()
+        self.len() == 0
     }
 
     /// The outline the modes live in.
@@ -46,36 +60,123 @@ impl Modes {
         &self.outline
     }
 
+    /// The lattice under the modes.
+    pub fn lattice(&self) -> &Lattice {
+        &self.lattice
+    }
+
+    /// The corners with functions of their own.
+    pub fn corners(&self) -> &[CornerSpace] {
+        &self.corners
+    }
+
+    /// The coefficients.
+    pub fn functions(&self) -> &Functions {
+        &self.functions
+    }
+
     /// ψ of mode `mode` (from 0) at `at`; 0 outside the outline.
     ///
     /// # Panics
     /// When `mode` is not below [`Modes::len`].
     pub fn value(&self, mode: usize, at: Point) -> f64 {
-        let (i, j) = self.numbers[mode];
-        let (b, pi) = (self.outline.bounds(), std::f64::consts::PI);
-        let (u, v) = (at.x - b.lo.x, at.y - b.lo.y);
-        let s = b.size();
-        if u < 0.0 || v < 0.0 || u > s.x || v > s.y {
-            return 0.0;
-        }
-        2.0 / (s.x * s.y).sqrt() * (pi * i as f64 * u / s.x).sin() * (pi * j as f64 * v / s.y).sin()
+        self.psi(mode, at).value
     }
 
-    /// ψ of one mode on a raster, row by row from the lowest; 0 outside the outline.
+    /// ψ and ∇ψ of one mode at a point; 0 outside the outline.
     ///
     /// # Panics
     /// When `mode` is not below [`Modes::len`].
-    pub fn sample(&self, mode: usize, raster: &Raster) -> Vec<f64> {
-        let mut out = Vec::with_capacity(raster.width * raster.height);
-        for j in 0..raster.height {
-            for i in 0..raster.width {
-                let p = Point {
-                    x: raster.origin.x + raster.step.x * i as f64,
-                    y: raster.origin.y + raster.step.y * j as f64,
-                };
-                out.push(self.value(mode, p));
+    pub fn psi(&self, mode: usize, at: Point) -> Psi {
+        assert!(mode < self.len(), "mode {mode} of {}", self.len());
+        if self.inside(at) {
+            self.psi_unclipped(mode, at)
+        } else {
+            Psi::default()
+        }
+    }
+
+    /// As [`Modes::psi`] without asking whether the point is inside: the value on the wall itself,
+    /// and the smooth continuation a little beyond it.
+    pub fn psi_unclipped(&self, mode: usize, at: Point) -> Psi {
+        let Some((n, i, j)) = self.locate(at) else {
+            return Psi::default();
+        };
+        let mut out = self.spline_part(mode, at, (n, i, j));
+        let mut k = 0;
+        for c in self.corners.iter() {
+            let m = c.functions.len();
+            if c.distance(at) < c.radius {
+                let mut v = vec![Value::default(); m];
+                c.eval(at, &mut v);
+                for (f, v) in v.iter().enumerate() {
+                    let y = self.functions.corners[(k + f) * self.len() + mode];
+                    out.value += y * v.value;
+                    out.gradient.x += y * v.gradient[0];
+                    out.gradient.y += y * v.gradient[1];
+                }
             }
+            k += m;
         }
         out
+    }
+
+    fn spline_part(&self, mode: usize, at: Point, (n, i, j): (usize, usize, usize)) -> Psi {
+        let p = self.lattice.degree;
+        let (r, space) = (&self.lattice.regions[n], &self.lattice.spaces[n]);
+        let low = r.low(i, j);
+        let (u, v) = ((at.x - low[0]) / r.h, (at.y - low[1]) / r.h);
+        let mut b = [[0.0; 8]; 4];
+        spline::eval(p, u, 0, &mut b[0][..=p]);
+        spline::eval(p, u, 1, &mut b[1][..=p]);
+        spline::eval(p, v, 0, &mut b[2][..=p]);
+        spline::eval(p, v, 1, &mut b[3][..=p]);
+        let (count, c) = (self.len(), &self.functions.splines[n]);
+        let mut out = Psi::default();
+        for a in 0..=p {
+            let row = space.first_spline(i, j) + a * space.size[1];
+            let (mut s, mut d) = (0.0, 0.0);
+            for e in 0..=p {
+                let x = c[(row + e) * count + mode];
+                s += x * b[2][e];
+                d += x * b[3][e];
+            }
+            out.value += b[0][a] * s;
+            out.gradient.x += b[1][a] * s / r.h;
+            out.gradient.y += b[0][a] * d / r.h;
+        }
+        out
+    }
+
+    /// Whether a point lies inside the outline.
+    pub fn inside(&self, at: Point) -> bool {
+        let lane = self.lattice.trace.grid.cell(0, 0, at.x);
+        let below = self.lattice.trace.crossings(0, lane, at.x);
+        below.iter().filter(|&&y| y < at.y).count() % 2 == 1
+    }
+
+    /// Region and cell of a point, when its cell belongs to the lattice.
+    pub(crate) fn locate(&self, at: Point) -> Option<(usize, usize, usize)> {
+        let grid = &self.lattice.trace.grid;
+        let mut key = Key {
+            level: 0,
+            i: grid.cell(0, 0, at.x),
+            j: grid.cell(0, 1, at.y),
+        };
+        while self.lattice.splits.has(key) {
+            let level = key.level + 1;
+            key = Key {
+                level,
+                i: grid.cell(level, 0, at.x),
+                j: grid.cell(level, 1, at.y),
+            };
+        }
+        self.lattice.regions.iter().enumerate().find_map(|(n, r)| {
+            if r.level != key.level {
+                return None;
+            }
+            let (i, j) = r.local(key);
+            (r.cell(i, j) != Cell::Out).then_some((n, i as usize, j as usize))
+        })
     }
 }

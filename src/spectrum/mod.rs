@@ -4,8 +4,14 @@
 //! Enters: an [`Outline`], the kinetic constant and what is wanted. Leaves: a [`Spectrum`].
 //! This room knows no files, no units of measure, no screens.
 
+mod attempt;
+pub mod bars;
 mod level;
+mod refine;
 mod solve;
+mod system;
+mod tail;
+pub mod weyl;
 
 pub use level::{Certificate, LatticeInfo, Level, Spectrum, Timings, Wanted};
 pub use solve::{SpectrumError, draft, solve};

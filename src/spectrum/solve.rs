@@ -1,9 +1,15 @@
-//! Placeholder of the solve loop: box modes on the bounding box, until the rooms below stand.
+//! The loop: choose a lattice, solve, judge, refine.
 
+use super::attempt::{ASYMMETRY, Attempt};
 use super::level::{Certificate, LatticeInfo, Level, Spectrum, Timings, Wanted};
+use super::refine::{Next, next};
+use super::{bars, weyl};
+use crate::eigen::{EigenError, Window};
 use crate::geometry::Outline;
+use crate::lattice::{Demand, LatticeError, Plan};
 use crate::modes::Modes;
 use crate::progress::{Cancelled, Watch};
+use std::sync::Arc;
 
 /// Why there is no spectrum.
 #[derive(Debug, thiserror::Error)]
@@ -19,6 +25,28 @@ pub enum SpectrumError {
     Numerical(String),
 }
 
+impl From<LatticeError> for SpectrumError {
+    fn from(e: LatticeError) -> Self {
+        Self::Numerical(e.to_string())
+    }
+}
+
+impl From<EigenError> for SpectrumError {
+    fn from(e: EigenError) -> Self {
+        match e {
+            EigenError::Cancelled(c) => Self::Cancelled(c),
+            other => Self::Numerical(other.to_string()),
+        }
+    }
+}
+
+/// Degree taken unless the user insists.
+pub const DEGREE: usize = 5;
+/// Attempts before the best answer is given with its own, larger bar.
+const ATTEMPTS: usize = 8;
+/// Most unknowns of one problem; p = 5 needs about 10 kB each.
+const MOST_UNKNOWNS: f64 = 1.2e6;
+
 /// The levels of `outline`; `kinetic` is ħ²/2m in energy × length², 1 for reduced shapes.
 /// `warm`: a spectrum of a similar outline, whose modes speed up the solve.
 ///
@@ -32,53 +60,73 @@ pub fn solve(
     watch: &Watch,
 ) -> Result<Spectrum, SpectrumError> {
     let _ = warm;
-    watch.step(0, 1, "levels")?;
-    let b = outline.bounds();
-    let (w, h) = (b.size().x, b.size().y);
-    let mut all = Vec::new();
-    for i in 1..=wanted.count {
-        for j in 1..=wanted.count {
-            let (a, c) = (i as f64 / w, j as f64 / h);
-            all.push((
-                kinetic * std::f64::consts::PI.powi(2) * (a * a + c * c),
-                i,
-                j,
-            ));
+    let (area, perimeter) = measures(outline);
+    let from = wanted.from.map(|e| e / kinetic);
+    let below = from.map_or(0.0, |l| weyl::count(area, perimeter, l));
+    let top = weyl::level(area, perimeter, below + wanted.count as f64 + 1.5);
+    let mut demand = Demand {
+        wave_number: top.sqrt(),
+        accuracy: wanted.accuracy,
+        cell: wanted.cell,
+        degree: wanted.degree.unwrap_or(DEGREE),
+        round: 0,
+    };
+    let window = match from {
+        None => Window::Lowest(wanted.count),
+        Some(value) => Window::From {
+            value,
+            count: wanted.count,
+        },
+    };
+    let mut timings = Timings::default();
+    let mut plan = Plan::new(outline, &demand);
+    let mut extra = Vec::new();
+    for round in 0..ATTEMPTS {
+        let cells = area / plan.grid.h.powi(2) + perimeter / plan.grid.h;
+        if cells > MOST_UNKNOWNS {
+            return Err(SpectrumError::TooMuch(format!(
+                "this needs about {cells:.1e} unknowns; ask for fewer levels, a lower accuracy or \
+                 a larger cell"
+            )));
+        }
+        watch.step(round, ATTEMPTS, "lattices")?;
+        let attempt = Attempt::new(outline, plan.clone(), window, top, &mut timings, watch)?;
+        let step = next(&attempt, wanted.accuracy);
+        if std::env::var_os("DW_TRACE").is_some() {
+            eprintln!(
+                "round {round} h {:.4} n {} regions {} worst bar {:.1e} next {:?}",
+                plan.grid.h,
+                attempt.unknowns,
+                attempt.lattice.regions.len(),
+                attempt.bars.iter().map(|b| b.1 / b.0).fold(0.0, f64::max),
+                match &step {
+                    Next::Split(k) => format!("split {}", k.len()),
+                    o => format!("{o:?}"),
+                }
+            );
+        }
+        let insisted = wanted.cell.is_some();
+        if step == Next::Done || insisted || round + 1 == ATTEMPTS {
+            return Ok(finish(outline, kinetic, wanted, attempt, timings));
+        }
+        match step {
+            Next::Finer(factor) => {
+                demand.round += 1;
+                plan = Plan::with_cell(outline, &demand, plan.grid.h * factor);
+                extra.clear();
+            }
+            Next::Split(cells) => {
+                extra.extend(cells);
+                for c in &extra {
+                    plan.splits.split(*c);
+                }
+            }
+            Next::Done => {}
         }
     }
-    all.sort_by(|a, b| a.0.total_cmp(&b.0));
-    all.truncate(wanted.count);
-    Ok(Spectrum {
-        levels: all
-            .iter()
-            .enumerate()
-            .map(|(k, &(energy, i, j))| Level {
-                index: k + 1,
-                energy,
-                error: 1e-7 * energy,
-                multiplicity: 1,
-                residual: 1e-12,
-                label: Some(format!("nx={i} ny={j}")),
-            })
-            .collect(),
-        modes: Modes::placeholder(outline.clone(), all.iter().map(|a| (a.1, a.2)).collect()),
-        lattice: LatticeInfo {
-            cell: w / 20.0,
-            finest: w / 20.0,
-            degree: 5,
-            unknowns: 625,
-            inside: 400,
-            cut: 80,
-        },
-        certificate: Certificate {
-            shift: all.last().map_or(0.0, |a| a.0) * 1.01,
-            below: wanted.count,
-            found: wanted.count,
-            complete: true,
-        },
-        timings: Timings::default(),
-        notes: vec!["placeholder".into()],
-    })
+    Err(SpectrumError::Numerical(
+        "no lattice was good enough".into(),
+    ))
 }
 
 /// Quick levels after a small edit, from the modes of the outline before it (relative error about
@@ -94,4 +142,88 @@ pub fn draft(
     watch: &Watch,
 ) -> Result<Spectrum, SpectrumError> {
     solve(outline, kinetic, wanted, Some(before), watch)
+}
+
+fn finish(
+    outline: &Outline,
+    kinetic: f64,
+    wanted: &Wanted,
+    a: Attempt,
+    timings: Timings,
+) -> Spectrum {
+    let beyond: Vec<f64> = a.found.beyond.iter().copied().chain(a.found.next).collect();
+    let groups = bars::multiplicities(&a.bars, &beyond);
+    let levels: Vec<Level> = a
+        .bars
+        .iter()
+        .enumerate()
+        .map(|(k, b)| Level {
+            index: a.found.first_index + k,
+            energy: kinetic * b.0,
+            error: kinetic * b.1,
+            multiplicity: groups[k],
+            residual: a.found.residuals[k],
+            label: None,
+        })
+        .collect();
+    let mut notes = Vec::new();
+    let worst = a.bars.iter().map(|b| b.1 / b.0.abs()).fold(0.0, f64::max);
+    if worst > wanted.accuracy {
+        notes.push(format!(
+            "the accuracy asked for, {:.0e}, was not reached everywhere: the largest relative \
+             error bar is {worst:.0e}",
+            wanted.accuracy
+        ));
+    }
+    if a.asymmetry > ASYMMETRY {
+        notes.push(format!(
+            "the corner functions are integrated to {:.0e} only",
+            a.asymmetry
+        ));
+    }
+    if !a.found.count.complete {
+        notes.push("the count of levels could not be certified".into());
+    }
+    let lattice = LatticeInfo {
+        cell: a.lattice.trace.grid.h,
+        finest: a.lattice.finest(),
+        degree: a.lattice.degree,
+        unknowns: a.unknowns,
+        inside: a.lattice.regions.iter().map(|r| r.inside.len()).sum(),
+        cut: a.lattice.regions.iter().map(|r| r.cuts.len()).sum(),
+    };
+    let certificate = Certificate {
+        shift: kinetic * a.found.count.shift,
+        below: a.found.count.below,
+        found: a.found.count.found,
+        complete: a.found.count.complete,
+    };
+    Spectrum {
+        levels,
+        modes: Modes::new(
+            outline.clone(),
+            Arc::new(a.lattice),
+            Arc::new(a.corners),
+            a.functions,
+        ),
+        lattice,
+        certificate,
+        timings,
+        notes,
+    }
+}
+
+/// Area and perimeter by Gauss quadrature along the pieces.
+fn measures(outline: &Outline) -> (f64, f64) {
+    let rule = crate::lattice::gauss::rule(24);
+    let (mut area, mut perimeter) = (0.0, 0.0);
+    for p in outline.pieces() {
+        for (x, w) in rule.x.iter().zip(&rule.w) {
+            let t = 0.5 * (1.0 + x);
+            let v = p.velocity(t);
+            area += 0.25 * w * p.at(t).cross(v);
+            perimeter += 0.5 * w * v.norm();
+        }
+    }
+    (area, perimeter)
 }

@@ -1,0 +1,256 @@
+//! Every hard-walled table of `tests/reference`, under random placements: the true error against
+//! the bar printed.
+mod common;
+use common::*;
+use dotwright::geometry::{Loop, Outline, Piece, pt};
+use dotwright::progress::Watch;
+use dotwright::spectrum::{Wanted, solve};
+use std::f64::consts::{PI, TAU};
+
+const L: [(f64, f64); 6] = [
+    (0., 0.),
+    (1., 0.),
+    (1., -1.),
+    (-1., -1.),
+    (-1., 1.),
+    (0., 1.),
+];
+const G1: [(f64, f64); 8] = [
+    (0., 0.),
+    (0., 1.),
+    (2., 3.),
+    (2., 2.),
+    (3., 2.),
+    (2., 1.),
+    (1., 1.),
+    (1., 0.),
+];
+const G2: [(f64, f64); 8] = [
+    (1., 0.),
+    (0., 1.),
+    (0., 2.),
+    (2., 2.),
+    (2., 3.),
+    (3., 2.),
+    (2., 1.),
+    (1., 1.),
+];
+
+type Placed = Box<dyn Fn(f64, (f64, f64)) -> Outline>;
+fn poly(v: &[(f64, f64)]) -> Placed {
+    let v = v.to_vec();
+    Box::new(move |a, t| placed(&v, a, t))
+}
+fn arc(c: (f64, f64), r: f64, start: f64, sweep: f64) -> Piece {
+    Piece::Arc {
+        centre: pt(c.0, c.1),
+        radius: r,
+        start,
+        sweep,
+    }
+}
+fn cases() -> Vec<(&'static str, &'static str, Placed)> {
+    vec![
+        (
+            "disc",
+            "disc_dirichlet.csv",
+            Box::new(|_, t| Outline::disc(pt(t.0, t.1), 1.0).expect("a disc")),
+        ),
+        (
+            "annulus",
+            "annulus_0.5.csv",
+            Box::new(|a, t| Outline {
+                loops: vec![
+                    Loop {
+                        pieces: vec![arc(t, 1.0, a, TAU)],
+                    },
+                    Loop {
+                        pieces: vec![arc(t, 0.5, a, -TAU)],
+                    },
+                ],
+            }),
+        ),
+        (
+            "ellipse",
+            "ellipse_1_0.5.csv",
+            Box::new(|a, t| Outline {
+                loops: vec![Loop {
+                    pieces: vec![Piece::Ellipse {
+                        centre: pt(t.0, t.1),
+                        half_axes: pt(1.0, 0.5),
+                        turn: a,
+                        start: 0.0,
+                        sweep: TAU,
+                    }],
+                }],
+            }),
+        ),
+        (
+            "square",
+            "rectangle_1x1.csv",
+            poly(&[(0., 0.), (1., 0.), (1., 1.), (0., 1.)]),
+        ),
+        (
+            "rectangle",
+            "rectangle_2x1.csv",
+            poly(&[(0., 0.), (2., 0.), (2., 1.), (0., 1.)]),
+        ),
+        (
+            "equilateral",
+            "triangle_equilateral_side1.csv",
+            poly(&[(0., 0.), (1., 0.), (0.5, 0.75f64.sqrt())]),
+        ),
+        (
+            "right isosceles",
+            "triangle_right_isosceles.csv",
+            poly(&[(0., 0.), (1., 0.), (0., 1.)]),
+        ),
+        (
+            "sector",
+            "sector_270.csv",
+            Box::new(|a, t| {
+                let c = pt(t.0, t.1);
+                let (p, q) = (
+                    c + dotwright::geometry::Point::polar(a),
+                    c + dotwright::geometry::Point::polar(a + 1.5 * PI),
+                );
+                Outline {
+                    loops: vec![Loop {
+                        pieces: vec![
+                            Piece::Line { from: c, to: p },
+                            arc(t, 1.0, a, 1.5 * PI),
+                            Piece::Line { from: q, to: c },
+                        ],
+                    }],
+                }
+            }),
+        ),
+        ("L", "lshape.csv", poly(&L)),
+        ("isospectral 1", "isospectral_1.csv", poly(&G1)),
+        ("isospectral 2", "isospectral_2.csv", poly(&G2)),
+    ]
+}
+
+#[test]
+fn tables() {
+    let mut rng = Stream(7);
+    let reps: usize = std::env::var("REPS")
+        .ok()
+        .and_then(|s| s.parse().ok())
+        .unwrap_or(3);
+    for (name, table, make) in cases() {
+        let exact = column(table, "lambda");
+        let n = exact.len().min(50);
+        let (mut worst, mut miss, mut total) = (0.0f64, 0, 0);
+        let (mut over, mut ratio) = (vec![], vec![]);
+        for _ in 0..reps {
+            let o = make(rng.within(0.0, TAU), (rng.next(), rng.next()));
+            let clock = std::time::Instant::now();
+            let s = solve(
+                &o,
+                1.0,
+                &Wanted {
+                    count: n,
+                    ..Wanted::default()
+                },
+                None,
+                &Watch::quiet(),
+            )
+            .unwrap();
+            let t = clock.elapsed().as_secs_f64() * 1e3;
+            for (l, e) in s.levels.iter().zip(&exact) {
+                let d = (l.energy - e).abs();
+                worst = worst.max(d / e);
+                total += 1;
+                if d > l.error + 1e-12 * e {
+                    miss += 1;
+                }
+                over.push(l.error / d.max(1e-13 * e));
+                let eta2 = l.error / dotwright::spectrum::bars::SPREAD;
+                ratio.push((l.energy + dotwright::spectrum::bars::SHIFT * eta2 - e) / eta2);
+            }
+            if std::env::var_os("DW_TRACE").is_some() {
+                eprintln!(
+                    "  {name} {:.0} ms n {} {:?} {:?}",
+                    t, s.lattice.unknowns, s.timings, s.notes
+                );
+            }
+        }
+        over.sort_by(f64::total_cmp);
+        ratio.sort_by(f64::total_cmp);
+        let q = |v: &Vec<f64>, x: f64| v[((v.len() - 1) as f64 * x) as usize];
+        println!(
+            "{name:16} worst {worst:.1e}  missed {miss} of {total}  over median {:.1}  err/eta2 min {:.3} 5% {:.3} median {:.3} 99% {:.3} max {:.3}",
+            q(&over, 0.5),
+            q(&ratio, 0.0),
+            q(&ratio, 0.05),
+            q(&ratio, 0.5),
+            q(&ratio, 0.99),
+            q(&ratio, 1.0)
+        );
+    }
+}
+
+#[test]
+fn features() {
+    let acc: f64 = std::env::var("ACC")
+        .ok()
+        .and_then(|s| s.parse().ok())
+        .unwrap_or(1e-6);
+    for r in [0.1, 0.05, 0.02] {
+        // L with its inner corner rounded
+        let line = |a: (f64, f64), b: (f64, f64)| Piece::Line {
+            from: pt(a.0, a.1),
+            to: pt(b.0, b.1),
+        };
+        let o = Outline {
+            loops: vec![Loop {
+                pieces: vec![
+                    line((0., 1.), (-1., 1.)),
+                    line((-1., 1.), (-1., -1.)),
+                    line((-1., -1.), (1., -1.)),
+                    line((1., -1.), (1., 0.)),
+                    line((1., 0.), (r, 0.)),
+                    arc((r, r), r, -PI / 2.0, -PI / 2.0),
+                    line((0., r), (0., 1.)),
+                ],
+            }],
+        };
+        let mut last: Vec<f64> = vec![];
+        for a in [acc, 1e-8] {
+            let clock = std::time::Instant::now();
+            let s = solve(
+                &o,
+                1.0,
+                &Wanted {
+                    count: 20,
+                    accuracy: a,
+                    ..Wanted::default()
+                },
+                None,
+                &Watch::quiet(),
+            )
+            .unwrap();
+            let t = clock.elapsed().as_secs_f64() * 1e3;
+            let worst = s
+                .levels
+                .iter()
+                .map(|l| l.error / l.energy)
+                .fold(0.0, f64::max);
+            if !last.is_empty() {
+                let d = s
+                    .levels
+                    .iter()
+                    .zip(&last)
+                    .map(|(l, e)| (l.energy - e).abs() / e)
+                    .fold(0.0, f64::max);
+                println!("rounded {r}: difference {d:.1e}");
+            }
+            println!(
+                "rounded {r} acc {a:.0e}: n {} finest {:.4} bar {worst:.1e} {t:.0} ms first {:.10} {:?}",
+                s.lattice.unknowns, s.lattice.finest, s.levels[0].energy, s.timings
+            );
+            last = s.levels.iter().map(|l| l.energy).collect();
+        }
+    }
+}
