@@ -2,10 +2,10 @@
 
 use super::factor::Factor;
 use super::field::Field;
+use super::levels::gather;
 use super::panel::{Panel, gram};
 use super::pencil::Pencil;
 use super::request::Problem;
-use super::slice::gather;
 use super::solve::Plan;
 use super::{EigenError, dense};
 use crate::progress::Watch;

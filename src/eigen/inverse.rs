@@ -3,9 +3,9 @@
 use super::EigenError;
 use super::factor::{Factor, Symbolic};
 use super::field::Field;
+use super::levels::gather;
 use super::panel::Panel;
 use super::pencil::{Pattern, Pencil};
-use super::slice::gather;
 use sprs::CsMat;
 
 /// Vectors solved for at a time.

@@ -1,23 +1,16 @@
 //! One slice of the spectrum: shift, Lanczos, count, and again until the count agrees.
 
-use super::certificate::{self, Bound, End, Verdict, compare};
+use super::certificate::{Bound, End, Verdict, compare};
 use super::factor::Factor;
 use super::field::Field;
+use super::judge::{Judge, State};
 use super::lanczos::{Estimate, Lanczos, Locked};
+use super::levels::{Level, lock, measure};
 use super::panel::Panel;
 use super::pencil::Pencil;
 use super::{EigenError, window};
 use crate::progress::Watch;
-use crate::units::Scalar;
 use std::time::Instant;
-
-/// A level in elimination order.
-#[derive(Debug, Clone)]
-pub(super) struct Level<T> {
-    pub value: f64,
-    pub residual: f64,
-    pub vector: Vec<T>,
-}
 
 /// A slice, certified or not.
 pub(super) struct Slice<T> {
@@ -140,82 +133,6 @@ pub(super) fn slice<T: Field, const B: usize>(
 /// Each decade nearer costs a digit of all other levels.
 const MOVES: i32 = 3;
 const NEAR: f64 = 1e-7;
-
-/// How far a search is.
-enum State {
-    Done(End),
-    /// Levels still to converge, at least.
-    Wait(usize),
-}
-
-struct Judge {
-    lower: f64,
-    shift: f64,
-    /// Levels between `lower` and `shift`, by inertia.
-    inside: usize,
-    want: usize,
-    tolerance: f64,
-    cluster: f64,
-    /// Checks in a row in which only levels below the shift were missing, and how many.
-    stalled: (usize, usize),
-}
-
-impl Judge {
-    fn size(&self, value: f64) -> f64 {
-        let span = if self.lower.is_finite() {
-            self.shift - self.lower
-        } else {
-            self.shift
-        };
-        value.abs().max(1e-3 * span.abs())
-    }
-
-    fn good(&self, e: &Estimate) -> bool {
-        e.error <= self.tolerance * self.size(e.value)
-    }
-
-    /// Converged Ritz values inside the window, contiguous above the shift, and the next one.
-    fn list(&self, estimates: &[Estimate]) -> (Vec<Estimate>, usize, Option<f64>) {
-        let below = estimates
-            .iter()
-            .filter(|e| e.value > self.lower && e.value < self.shift && self.good(e));
-        let mut list: Vec<Estimate> = below.copied().collect();
-        let low = list.len();
-        let mut above = estimates.iter().filter(|e| e.value > self.shift);
-        let next = loop {
-            match above.next() {
-                Some(e) if self.good(e) => list.push(*e),
-                Some(e) => break Some(e.value - e.error),
-                None => break None,
-            }
-        };
-        (list, low, next)
-    }
-
-    fn state(&mut self, estimates: &[Estimate]) -> State {
-        let (list, low, next) = self.list(estimates);
-        let values: Vec<f64> = list.iter().map(|e| e.value).collect();
-        let end = certificate::end(
-            &values,
-            next,
-            self.want.min(values.len().max(1)),
-            self.cluster,
-        );
-        let short = self.inside.saturating_sub(low);
-        let enough = values.len() + short >= self.want;
-        if enough && short > 0 && next.is_some() {
-            self.stalled = if self.stalled.1 == low {
-                (self.stalled.0 + 1, low)
-            } else {
-                (0, low)
-            };
-        }
-        match end {
-            Some(end) if enough && (short == 0 || self.stalled.0 >= 3) => State::Done(end),
-            _ => State::Wait(self.want.saturating_sub(values.len()).max(short).max(1)),
-        }
-    }
-}
 
 /// Levels and where they end.
 type Harvest<T> = (Vec<Level<T>>, End);
@@ -363,83 +280,6 @@ fn repair<T: Field, const B: usize>(
             return Ok(measure::<T, B>(pencil, &vectors, chosen.len()));
         }
     }
-}
-
-/// Panels of known levels with their products with M.
-pub(super) fn lock<'l, T: Field, const B: usize>(
-    pencil: &Pencil<'_, T>,
-    levels: impl Iterator<Item = &'l Level<T>>,
-) -> Locked<T, B> {
-    let levels: Vec<&Level<T>> = levels.collect();
-    let v: Vec<Panel<T, B>> = levels
-        .chunks(B)
-        .map(|group| {
-            gather(
-                pencil.pattern.size(),
-                group.iter().map(|l| l.vector.as_slice()),
-            )
-        })
-        .collect();
-    let mv = v
-        .iter()
-        .map(|x| {
-            let mut y = Vec::new();
-            pencil.mass(x, &mut y);
-            y
-        })
-        .collect();
-    Locked { v, mv }
-}
-
-/// Up to B vectors side by side.
-pub(super) fn gather<'v, T: Field, const B: usize>(
-    n: usize,
-    vectors: impl Iterator<Item = &'v [T]>,
-) -> Panel<T, B> {
-    let mut panel = vec![T::zeros::<B>(); n];
-    for (c, x) in vectors.take(B).enumerate() {
-        for (row, &x) in panel.iter_mut().zip(x) {
-            T::put(row, c, x);
-        }
-    }
-    panel
-}
-
-/// Levels from vectors: the value by Rayleigh's quotient, the residual by fresh products.
-pub(super) fn measure<T: Field, const B: usize>(
-    pencil: &Pencil<'_, T>,
-    vectors: &Locked<T, B>,
-    count: usize,
-) -> Vec<Level<T>> {
-    let n = pencil.pattern.size();
-    let mut levels = Vec::with_capacity(count);
-    let mut kx = Vec::new();
-    for (v, mv) in vectors.v.iter().zip(&vectors.mv) {
-        pencil.stiffness(v, &mut kx);
-        for c in 0..B.min(count - levels.len()) {
-            let (mut top, mut bottom) = (0.0, 0.0);
-            for i in 0..n {
-                let x = T::at(&v[i], c).conj();
-                top += (x * T::at(&kx[i], c)).re();
-                bottom += (x * T::at(&mv[i], c)).re();
-            }
-            let value = top / bottom;
-            let norm = bottom.sqrt().recip();
-            let mut r = 0.0;
-            for i in 0..n {
-                let d = T::at(&kx[i], c) - T::at(&mv[i], c).scale(value);
-                r += Scalar::abs2(d) / pencil.mass[i];
-            }
-            let vector = v.iter().map(|row| T::at(row, c).scale(norm)).collect();
-            let size = value.abs().max(f64::MIN_POSITIVE);
-            levels.push(Level {
-                value,
-                residual: r.sqrt() * norm / size,
-                vector,
-            });
-        }
-    }
-    levels
 }
 
 #[cfg(test)]

@@ -3,10 +3,13 @@
 use super::certificate::{BOTTOM, Bound};
 use super::factor::{Factor, Symbolic};
 use super::field::Field;
+use super::levels::{gather, lock};
 use super::pencil::{Pattern, Pencil};
 use super::request::{Count, Effort, Found, Problem, Settings, Window};
-use super::slice::{Level, Slice, Spent, Task, gather, lock, slice};
-use super::{EigenError, dense, window};
+use super::room::{Room, SLICE, room};
+use super::slice::{Slice, Spent, Task, slice};
+use super::small::all_dense;
+use super::{EigenError, window};
 use crate::progress::Watch;
 use std::time::Instant;
 
@@ -43,9 +46,6 @@ impl Plan {
         }
     }
 }
-
-/// Levels of a slice at most: longer windows are cut, each slice with its own shift.
-const SLICE: usize = 128;
 
 /// Below this many unknowns a dense solve is faster. (Above half of the spectrum it is taken too:
 /// a Lanczos process has no room left there.)
@@ -225,67 +225,6 @@ fn wide<T: Field, const B: usize>(
     })
 }
 
-/// What fits in memory.
-struct Room {
-    /// Columns of a Lanczos basis.
-    columns: usize,
-    /// Levels of a slice.
-    slice: usize,
-    /// Bytes in all.
-    bytes: u64,
-}
-
-fn room<T: Field, const B: usize>(
-    n: usize,
-    count: usize,
-    entries: usize,
-    length: usize,
-    limit: u64,
-    small: bool,
-) -> Result<Room, EigenError> {
-    let size = size_of::<T>() as u64;
-    // Factor; K, M and the shifted matrix with their maps; the levels, inside and handed out.
-    let fixed =
-        length as u64 * size + entries as u64 * (3 * size + 16) + 2 * (count * n) as u64 * size;
-    if small {
-        let bytes = fixed + 6 * (n * n) as u64 * size;
-        return if bytes > limit {
-            Err(EigenError::TooLarge {
-                needed: bytes,
-                limit,
-            })
-        } else {
-            Ok(Room {
-                columns: n,
-                slice: count,
-                bytes,
-            })
-        };
-    }
-    // Slices of equal length; a basis of twice the slice, two vectors a column (x and Mx), and
-    // once more of half of them for the combination at a restart.
-    let slices = count.div_ceil(SLICE);
-    let mut slice = count.div_ceil(slices);
-    loop {
-        let columns = (2 * slice + 12 * B).min(n / 2).max(6 * B);
-        let bytes = fixed + (3 * columns * n) as u64 * size;
-        if bytes <= limit {
-            return Ok(Room {
-                columns,
-                slice,
-                bytes,
-            });
-        }
-        if slice <= 4 {
-            return Err(EigenError::TooLarge {
-                needed: bytes,
-                limit,
-            });
-        }
-        slice = slice.div_ceil(2);
-    }
-}
-
 #[allow(clippy::too_many_arguments)]
 fn sliced<T: Field, const B: usize>(
     factor: &mut Factor<'_, T>,
@@ -398,70 +337,4 @@ fn mix<T: Field, const B: usize>(
         }
     }
     gather(n, sums.iter().map(Vec::as_slice))
-}
-
-/// Everything at once, for small problems; the count is the same as for large ones.
-fn all_dense<T: Field>(
-    factor: &mut Factor<'_, T>,
-    pencil: &Pencil<'_, T>,
-    lower: Bound,
-    settings: &Settings<'_, T>,
-    spent: &mut Spent,
-) -> Result<Slice<T>, EigenError> {
-    let p = pencil.pattern;
-    let n = p.size();
-    let (mut k, mut m) = (vec![T::default(); n * n], vec![T::default(); n * n]);
-    for i in 0..n {
-        for e in p.start[i] as usize..p.start[i + 1] as usize {
-            let j = p.columns[e] as usize;
-            for (full, half) in [(&mut k, &pencil.k), (&mut m, &pencil.m)] {
-                full[j * n + i] = half[e];
-                full[i * n + j] = half[e].conj();
-            }
-        }
-    }
-    let eigen = dense::generalised(&k, &m, n)?;
-    let first = eigen.values.iter().filter(|&&x| x < lower.value).count();
-    let values = &eigen.values[first..];
-    let count = settings.window.count().min(values.len());
-    let top = values.last().copied().unwrap_or(0.0);
-    let next = Some(top + 0.1 * top.abs() + f64::MIN_POSITIVE);
-    let end = super::certificate::end(values, next, count, settings.cluster);
-    let (keep, shift) = end.map_or((values.len(), top + 0.05 * top.abs()), |e| {
-        (e.keep, e.shift)
-    });
-    let vectors: Vec<&[T]> = eigen.vectors.chunks(n).skip(first).take(keep).collect();
-    let locked = super::lanczos::Locked::<T, 4> {
-        v: vectors
-            .chunks(4)
-            .map(|g| gather(n, g.iter().copied()))
-            .collect(),
-        mv: Vec::new(),
-    };
-    let mv = locked.v.iter().map(|x| {
-        let mut y = Vec::new();
-        pencil.mass(x, &mut y);
-        y
-    });
-    let locked = super::lanczos::Locked {
-        mv: mv.collect(),
-        v: locked.v,
-    };
-    let mut levels: Vec<Level<T>> = super::slice::measure(pencil, &locked, keep);
-    levels.sort_by(|a, b| a.value.total_cmp(&b.value));
-    let clock = Instant::now();
-    factor.at(pencil, shift)?;
-    spent.factor_ms += clock.elapsed().as_secs_f64() * 1e3;
-    let upper = Bound {
-        value: factor.shift,
-        below: factor.below,
-    };
-    let verdict = super::certificate::compare(lower, upper, levels.iter().map(|l| l.value));
-    Ok(Slice {
-        levels,
-        upper,
-        next: eigen.values.get(first + keep).copied(),
-        complete: verdict == super::certificate::Verdict::Whole,
-        backward: factor.backward,
-    })
 }
