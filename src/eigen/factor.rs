@@ -32,8 +32,8 @@ impl<T: faer::traits::ComplexField> Factorable for T {}
 /// Largest backward error of a test solve that lets an inertia count.
 const GATE: f64 = 1e-11;
 
-/// When neighbouring supernodes are merged: (columns together, share of zeros allowed). Wider than
-/// the library's own, because splines couple densely.
+/// When neighbouring supernodes are merged: (columns together, share of zeros allowed). A little
+/// wider than the library's own, as splines couple densely; not tuned.
 const RELAX: &[(usize, f64)] = &[(8, 1.0), (24, 0.6), (64, 0.15), (usize::MAX, 0.05)];
 
 /// The symbolic factor of a [`Pattern`].

@@ -7,7 +7,7 @@ use super::pencil::Pencil;
 use super::{EigenError, Settings};
 
 /// Share of the window's levels that may lie below the shift. Solves are fewest in the middle;
-/// within this range they rise by less than another factorisation costs.
+/// the range is a choice, so that a fair guess costs no second factorisation.
 const MIDDLE: std::ops::RangeInclusive<f64> = 0.22..=0.75;
 
 /// Corrections by interpolation before any shift inside the window will do.
