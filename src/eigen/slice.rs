@@ -130,7 +130,7 @@ pub(super) fn slice<T: Field, const B: usize>(
 }
 
 /// Times a shift may be moved off a level, and how near is too near: the distance over the shift.
-/// Each decade nearer costs a digit of all other levels.
+/// Rounding grows with the inverse of it.
 const MOVES: i32 = 3;
 const NEAR: f64 = 1e-7;
 
