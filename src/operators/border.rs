@@ -390,8 +390,8 @@ fn own_block(s: &Sampled, out: &mut [f64]) {
     for start in (0..count).step_by(CHUNK) {
         let here = CHUNK.min(count - start);
         for f in 0..nf {
-            for k in 0..here {
-                factors[k] = s.cloud.weights[start + k] * s.values[(start + k) * wide + nf + f];
+            for (k, factor) in factors[..here].iter_mut().enumerate() {
+                *factor = s.cloud.weights[start + k] * s.values[(start + k) * wide + nf + f];
             }
             for from in [f, nf + f] {
                 let to = &mut out[f * wide + from..][..nf - f];
