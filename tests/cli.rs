@@ -1,6 +1,7 @@
 //! The program as people run it: words in, output, notes and exit codes out.
 #![allow(clippy::unwrap_used)]
 
+use dotwright::units::parse_concise;
 use serde_json::Value;
 use std::fs;
 use std::io::Write;
@@ -522,4 +523,88 @@ fn materials_are_listed_three_ways() {
             .iter()
             .any(|m| m["name"] == "GaAs" && m["mass"] == 0.067)
     );
+}
+
+/// Every command of the README is run in an empty folder beside the shapes.
+#[cfg(unix)]
+#[test]
+fn what_the_readme_shows_can_be_done() {
+    let root = Path::new(env!("CARGO_MANIFEST_DIR"));
+    let folder = tempfile::tempdir().unwrap();
+    std::os::unix::fs::symlink(root.join("shapes"), folder.path().join("shapes")).unwrap();
+    let readme = fs::read_to_string(root.join("README.md")).unwrap();
+    // the level table shown is the one printed: intervals overlap, row by row
+    let table = |text: &str| -> Vec<(f64, f64)> {
+        let rows = text
+            .lines()
+            .filter(|l| l.starts_with("    ") && l.contains('('));
+        let energy = |l: &str| parse_concise(l.split_whitespace().nth(1).unwrap()).unwrap();
+        rows.map(energy).collect()
+    };
+    let shown = table(&readme);
+    let printed = table(&done(&["levels", "shapes/notch-dot.toml", "--modes", "4"]));
+    assert_eq!((shown.len(), printed.len()), (4, 4));
+    for (a, b) in shown.iter().zip(&printed) {
+        assert!((a.0 - b.0).abs() <= a.1 + b.1, "{a:?} against {b:?}");
+    }
+    let mut count = 0;
+    for line in readme.lines().filter_map(|l| l.strip_prefix("$ dotwright")) {
+        let mut words: Vec<&str> = Vec::new();
+        // the only quoting the README needs: parts between double quotes are one word
+        for (k, part) in line.split('"').enumerate() {
+            if k % 2 == 1 {
+                words.push(part);
+            } else {
+                words.extend(part.split_whitespace());
+            }
+        }
+        let output = program(&words).current_dir(folder.path()).output().unwrap();
+        assert_eq!(output.status.code(), Some(0), "{line}: {}", err(&output));
+        count += 1;
+    }
+    assert!(count >= 10, "only {count} commands found");
+    for picture in ["m.png", "slide.png", "sheet.png"] {
+        assert!(folder.path().join(picture).exists(), "{picture}");
+    }
+}
+
+/// The set of signals a process catches, as Linux tells it.
+#[cfg(target_os = "linux")]
+fn catches(process: u32, signal: u32) -> bool {
+    let status = fs::read_to_string(format!("/proc/{process}/status")).unwrap_or_default();
+    let set = status.lines().find_map(|l| l.strip_prefix("SigCgt:"));
+    let set = set.and_then(|s| u64::from_str_radix(s.trim(), 16).ok());
+    set.is_some_and(|s| s >> (signal - 1) & 1 == 1)
+}
+
+#[cfg(target_os = "linux")]
+#[test]
+fn a_signal_calls_a_long_solve_off() {
+    let folder = tempfile::tempdir().unwrap();
+    let picture = folder.path().join("m.png");
+    for (name, number) in [("-INT", 2), ("-TERM", 15)] {
+        let mut child = program(&["sheet", "shapes/unit-disc.toml", "--modes", "3000", "-o"])
+            .arg(&picture)
+            .stdout(Stdio::piped())
+            .stderr(Stdio::piped())
+            .spawn()
+            .unwrap();
+        let id = child.id();
+        while !catches(id, number) {
+            assert!(child.try_wait().unwrap().is_none(), "over before it began");
+            std::thread::yield_now();
+        }
+        let sent = Command::new("kill").args([name, &id.to_string()]).status();
+        assert!(sent.unwrap().success());
+        let output = child.wait_with_output().unwrap();
+        assert_eq!(
+            output.status.code(),
+            Some(128 + number as i32),
+            "{}",
+            err(&output)
+        );
+        assert!(err(&output).contains("called off"), "{}", err(&output));
+        assert_eq!(out(&output), "");
+        assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 0);
+    }
 }

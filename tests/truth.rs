@@ -156,7 +156,7 @@ fn tables() {
                 None,
                 &Watch::quiet(),
             )
-            .unwrap();
+            .expect("levels");
             let t = clock.elapsed().as_secs_f64() * 1e3;
             for (l, e) in s.levels.iter().zip(&exact) {
                 let d = (l.energy - e).abs();
@@ -176,6 +176,12 @@ fn tables() {
                 );
             }
         }
+        // the accuracy asked for by default, and the bars' coverage, as the README promises
+        assert!(worst < 1e-6, "{name}: true error {worst:.1e}");
+        assert!(
+            miss * 100 <= total,
+            "{name}: {miss} of {total} outside their bars"
+        );
         over.sort_by(f64::total_cmp);
         ratio.sort_by(f64::total_cmp);
         let q = |v: &Vec<f64>, x: f64| v[((v.len() - 1) as f64 * x) as usize];
@@ -230,7 +236,7 @@ fn features() {
                 None,
                 &Watch::quiet(),
             )
-            .unwrap();
+            .expect("levels");
             let t = clock.elapsed().as_secs_f64() * 1e3;
             let worst = s
                 .levels
@@ -244,6 +250,7 @@ fn features() {
                     .zip(&last)
                     .map(|(l, e)| (l.energy - e).abs() / e)
                     .fold(0.0, f64::max);
+                assert!(d < 1e-6, "rounded {r}: {d:.1e} between accuracies");
                 println!("rounded {r}: difference {d:.1e}");
             }
             println!(

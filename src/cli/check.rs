@@ -4,7 +4,7 @@ use super::open::Opened;
 use super::options::Check;
 use super::output::print;
 use super::stop::Stop;
-use crate::geometry::{Corner, Outline, Point};
+use crate::geometry::{Corner, Outline, Point, Symmetry};
 use crate::report::CAUTION;
 use crate::spectrum::weyl;
 use std::f64::consts::PI;
@@ -24,7 +24,10 @@ pub fn check(asked: &Check) -> Result<(), Stop> {
         Some(text) => Some(opened.energy("--below", text)?),
         None => None,
     };
-    let mut page = Page::new(opened.document.units().length);
+    let mut page = Page::new(
+        opened.document.units().length,
+        opened.outline.bounds().diagonal(),
+    );
     page.text += &format!("{}\n{}\n\n", opened.document.title(), opened.model);
     sizes(&mut page, &opened);
     outline(&mut page, &opened.outline);
@@ -41,12 +44,17 @@ pub fn check(asked: &Check) -> Result<(), Stop> {
 struct Page {
     text: String,
     unit: &'static str,
+    /// Coordinates closer to zero are zero: roundoff of an outline of this size.
+    grain: f64,
 }
 
 impl Page {
-    fn new(unit: &'static str) -> Self {
-        let text = String::new();
-        Self { text, unit }
+    fn new(unit: &'static str, size: f64) -> Self {
+        Self {
+            text: String::new(),
+            unit,
+            grain: 1e-9 * size,
+        }
     }
 
     fn line(&mut self, name: &str, value: &str) {
@@ -64,7 +72,14 @@ impl Page {
     }
 
     fn place(&self, p: Point) -> String {
-        format!("({}, {})", significant(p.x), significant(p.y))
+        let clean = |x: f64| {
+            if x.abs() < self.grain {
+                "0".to_owned()
+            } else {
+                significant(x)
+            }
+        };
+        format!("({}, {})", clean(p.x), clean(p.y))
     }
 }
 
@@ -88,6 +103,12 @@ fn significant(x: f64) -> String {
         };
     }
     text
+}
+
+/// Three significant digits.
+fn rounded(x: f64) -> f64 {
+    let step = 10f64.powf(x.abs().max(1e-300).log10().floor() - 2.0);
+    (x / step).round() * step
 }
 
 fn sizes(page: &mut Page, opened: &Opened) {
@@ -122,7 +143,52 @@ fn outline(page: &mut Page, outline: &Outline) {
         let text = format!("{} at {}", page.measure(radius, 1), page.place(at));
         page.line("smallest radius", &text);
     }
+    let narrow = outline.narrowest();
+    for (name, gap) in [
+        ("narrowest neck", narrow.neck),
+        ("narrowest slot", narrow.slot),
+    ] {
+        if let Some(gap) = gap {
+            // found by rays, to a few parts in a thousand
+            let width = page.measure(rounded(gap.width), 1);
+            page.line(name, &format!("about {width} at {}", page.place(gap.at)));
+        }
+    }
     corners(page, &outline.corners(SMOOTH));
+    let text = symmetry(page, &outline.symmetries());
+    page.line("symmetry", &text);
+}
+
+/// Mirrors and rotations in words.
+fn symmetry(page: &Page, found: &Symmetry) -> String {
+    let centre = page.place(found.centre);
+    if found.circle {
+        return format!("every turn and every mirror, about {centre}");
+    }
+    let mut parts = Vec::new();
+    if found.rotation > 1 {
+        parts.push(format!("{}-fold turns", found.rotation));
+    }
+    match &found.mirrors[..] {
+        [] => {}
+        [one] => parts.push(format!(
+            "a mirror axis at {}°",
+            significant(one.to_degrees())
+        )),
+        many => {
+            let angle = |a: &f64| format!("{}°", significant(a.to_degrees()));
+            let angles: Vec<String> = many.iter().take(LISTED).map(angle).collect();
+            parts.push(format!(
+                "{} mirror axes at {}",
+                many.len(),
+                angles.join(", ")
+            ));
+        }
+    }
+    match parts.is_empty() {
+        true => "none".to_owned(),
+        false => format!("{}, about {centre}", parts.join(" and ")),
+    }
 }
 
 fn plural(count: usize, word: &str) -> String {

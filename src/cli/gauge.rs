@@ -48,6 +48,13 @@ impl Gauge {
         };
         (Self { drawn }, watch)
     }
+
+    /// Clears the line, drawn or not, where standard error is a terminal.
+    pub fn wipe() {
+        if io::stderr().is_terminal() {
+            let _ = write!(io::stderr(), "\r\x1b[K");
+        }
+    }
 }
 
 impl Drawn {
@@ -69,7 +76,7 @@ impl Drawn {
 impl Drop for Gauge {
     fn drop(&mut self) {
         if self.drawn.lock().is_ok_and(|d| d.last.is_some()) {
-            let _ = write!(io::stderr(), "\r\x1b[K");
+            Self::wipe();
         }
     }
 }

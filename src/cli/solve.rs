@@ -3,11 +3,17 @@
 use super::gauge::Gauge;
 use super::open::Opened;
 use super::stop::Stop;
+use crate::progress::Watch;
 use crate::spectrum::{self, Spectrum};
 use signal_hook::consts::{SIGINT, SIGTERM};
 use signal_hook::iterator::Signals;
 use std::sync::Arc;
 use std::sync::atomic::{AtomicI32, Ordering};
+use std::sync::mpsc::{Receiver, RecvTimeoutError, channel};
+use std::time::Duration;
+
+/// How long the solver may take to notice that it was called off.
+const GRACE: Duration = Duration::from_millis(300);
 
 /// Levels and modes of an opened shape.
 ///
@@ -16,24 +22,17 @@ use std::sync::atomic::{AtomicI32, Ordering};
 pub fn solve(opened: &Opened) -> Result<Spectrum, Stop> {
     let (gauge, watch) = Gauge::start();
     let caught = Arc::new(AtomicI32::new(0));
-    let signals = Signals::new([SIGINT, SIGTERM]);
+    let (running, ended) = channel();
     // where signals cannot be caught they end the program, which is what they are for
-    let handle = signals.ok().map(|mut signals| {
+    let handle = Signals::new([SIGINT, SIGTERM]).ok().map(|signals| {
         let handle = signals.handle();
         let (watch, caught) = (watch.clone(), Arc::clone(&caught));
-        std::thread::spawn(move || {
-            for signal in signals.forever() {
-                if caught.swap(signal, Ordering::SeqCst) != 0 {
-                    // asked twice: do not wait for the solver's next look
-                    let _ = signal_hook::low_level::emulate_default_handler(signal);
-                }
-                watch.cancel();
-            }
-        });
+        std::thread::spawn(move || stand_by(signals, &watch, &caught, &ended));
         handle
     });
     let kinetic = opened.document.kinetic();
     let solved = spectrum::solve(&opened.outline, kinetic, &opened.wanted, None, &watch);
+    drop::<std::sync::mpsc::Sender<()>>(running);
     if let Some(handle) = handle {
         handle.close();
     }
@@ -41,5 +40,20 @@ pub fn solve(opened: &Opened) -> Result<Spectrum, Stop> {
     match (solved, caught.load(Ordering::SeqCst)) {
         (_, signal) if signal != 0 => Err(Stop::Signal(signal)),
         (solved, _) => Ok(solved?),
+    }
+}
+
+/// Calls the solve off at the first signal. A solver in the middle of a long step is not waited
+/// for: a solve writes nothing, so the program may end under it.
+fn stand_by(mut signals: Signals, watch: &Watch, caught: &AtomicI32, ended: &Receiver<()>) {
+    if let Some(signal) = signals.forever().next() {
+        caught.store(signal, Ordering::SeqCst);
+        watch.cancel();
+        if ended.recv_timeout(GRACE) == Err(RecvTimeoutError::Timeout) {
+            Gauge::wipe();
+            let stop = Stop::Signal(signal);
+            stop.report();
+            std::process::exit(stop.number());
+        }
     }
 }

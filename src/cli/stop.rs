@@ -46,12 +46,17 @@ impl Stop {
 
     /// The exit code.
     pub fn code(&self) -> ExitCode {
+        ExitCode::from(self.number() as u8)
+    }
+
+    /// The exit code as a number, 0 to 255.
+    pub(super) fn number(&self) -> i32 {
         match self {
-            Self::Words(error) if !error.use_stderr() => ExitCode::SUCCESS,
-            Self::Words(_) | Self::Input(_) => ExitCode::from(2),
-            Self::Machine(_) => ExitCode::from(1),
-            Self::Signal(n) => ExitCode::from(128u8.saturating_add(*n as u8)),
-            Self::Closed => ExitCode::SUCCESS,
+            Self::Closed => 0,
+            Self::Words(error) if !error.use_stderr() => 0,
+            Self::Machine(_) => 1,
+            Self::Words(_) | Self::Input(_) => 2,
+            Self::Signal(n) => (128 + n).clamp(128, 255),
         }
     }
 }

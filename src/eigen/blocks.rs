@@ -2,12 +2,13 @@
 //!
 //! A block of `k` vectors of length `n` is one slice, vector after vector.
 
-use super::{EigenError, Number};
+use super::dense::{Eigen, hermitian};
+use super::{EigenError, Field};
 use faer::linalg::matmul::matmul;
-use faer::{Accum, Mat, MatMut, MatRef, Par, Side};
+use faer::{Accum, MatMut, MatRef, Par};
 
 /// c = xᴴ y: `c[j * kx + i] = x_i · y_j`.
-pub fn project<T: Number>(x: &[T], kx: usize, y: &[T], ky: usize, n: usize) -> Vec<T> {
+pub fn project<T: Field>(x: &[T], kx: usize, y: &[T], ky: usize, n: usize) -> Vec<T> {
     let mut c = vec![T::default(); kx * ky];
     if kx > 0 && ky > 0 {
         let a = MatRef::from_column_major_slice(x, n, kx);
@@ -19,7 +20,7 @@ pub fn project<T: Number>(x: &[T], kx: usize, y: &[T], ky: usize, n: usize) -> V
 }
 
 /// y ← y + factor · x c, with x of `kx` vectors, c kx × ky column-major.
-pub fn combine<T: Number>(
+pub fn combine<T: Field>(
     y: &mut [T],
     ky: usize,
     x: &[T],
@@ -44,7 +45,7 @@ pub fn combine<T: Number>(
     );
 }
 
-fn one<T: Number>() -> T {
+fn one<T: Field>() -> T {
     crate::units::Scalar::from_re(1.0)
 }
 
@@ -52,28 +53,16 @@ fn one<T: Number>() -> T {
 /// vector k at `[k * n..]`.
 ///
 /// # Errors
-/// [`EigenError::Failed`] when the iteration does not converge.
-pub fn symmetric_eigen<T: Number>(a: &[T], n: usize) -> Result<(Vec<f64>, Vec<T>), EigenError> {
+/// [`EigenError::Dense`] when the iteration does not converge.
+pub fn symmetric_eigen<T: Field>(a: &[T], n: usize) -> Result<(Vec<f64>, Vec<T>), EigenError> {
     if n == 0 {
         return Ok((Vec::new(), Vec::new()));
     }
     if a.iter()
         .any(|v| !crate::units::Scalar::abs2(*v).is_finite())
     {
-        return Err(EigenError::Failed("a dense block holds no numbers".into()));
+        return Err(EigenError::Dense("it holds numbers that are not finite"));
     }
-    let m = Mat::<T>::from_fn(n, n, |i, j| a[j * n + i]);
-    let e = m
-        .self_adjoint_eigen(Side::Lower)
-        .map_err(|e| EigenError::Failed(format!("small eigenproblem: {e:?}")))?;
-    let values = (0..n)
-        .map(|k| crate::units::Scalar::re(e.S().column_vector()[k]))
-        .collect();
-    let mut vectors = vec![T::default(); n * n];
-    for k in 0..n {
-        for i in 0..n {
-            vectors[k * n + i] = e.U()[(i, k)];
-        }
-    }
+    let Eigen { values, vectors } = hermitian(a, n)?;
     Ok((values, vectors))
 }

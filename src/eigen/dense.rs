@@ -1,77 +1,77 @@
-//! Small problems, solved whole: M x = μ K x with μ = 1/λ, so that the lowest levels are the
-//! largest μ and keep all their digits.
+//! Small dense eigenvalue problems, on the calling thread alone.
 
-use super::blocks::symmetric_eigen;
-use super::{EigenError, Found, Number, Problem, Window};
-use crate::units::Scalar;
+use super::EigenError;
+use super::field::Field;
+use faer::diag::Diag;
+use faer::dyn_stack::{MemBuffer, MemStack};
+use faer::linalg::cholesky::llt;
+use faer::linalg::evd::{ComputeEigenvectors, self_adjoint_evd, self_adjoint_evd_scratch};
 use faer::linalg::triangular_solve::{
     solve_lower_triangular_in_place, solve_upper_triangular_in_place,
 };
-use faer::{Mat, Par, Side};
-use std::time::Instant;
+use faer::{Mat, MatMut, MatRef, Par};
 
-/// Below this many unknowns the dense way is the faster one.
-pub const SMALL: usize = 120;
+/// Eigenvalues, ascending, and eigenvectors, column by column.
+pub(super) struct Eigen<T> {
+    pub values: Vec<f64>,
+    pub vectors: Vec<T>,
+}
 
-/// All levels, the window picked from them.
-pub fn solve<T: Number>(p: &Problem<'_, T>, window: Window) -> Result<Found<T>, EigenError> {
-    let clock = Instant::now();
-    let n = p.stiffness.rows();
-    let whole = |a: &sprs::CsMat<T>| {
-        let mut m = Mat::<T>::zeros(n, n);
-        for (v, (i, j)) in a.iter() {
-            m[(i, j)] = *v;
-        }
-        m
-    };
-    let k = whole(p.stiffness);
-    let llt = k
-        .llt(Side::Lower)
-        .map_err(|_| EigenError::IllPosed("the stiffness is not positive definite".into()))?;
-    let l = llt.L().to_owned();
-    let mut a = whole(p.mass);
-    solve_lower_triangular_in_place(l.as_ref(), a.as_mut(), Par::Seq);
-    let mut a = a.adjoint().to_owned();
-    solve_lower_triangular_in_place(l.as_ref(), a.as_mut(), Par::Seq);
-    let flat: Vec<T> = (0..n * n).map(|e| a[(e % n, e / n)]).collect();
-    let (mu, vectors) = symmetric_eigen(&flat, n)?;
-    if mu.first().is_some_and(|m| *m <= 0.0) {
-        return Err(EigenError::IllPosed(
-            "the mass is not positive definite".into(),
-        ));
-    }
-    // ascending in λ
-    let values: Vec<f64> = mu.iter().rev().map(|m| 1.0 / m).collect();
-    let (first, count) = match window {
-        Window::Lowest(c) => (0, c),
-        Window::From { value, count } => (values.partition_point(|v| *v < value), count),
-    };
-    if first + count > n {
-        return Err(EigenError::TooMany {
-            asked: first + count,
-            unknowns: n,
-        });
-    }
-    let last = first + count;
-    let mut out = Found {
-        values: values[first..last].to_vec(),
-        residuals: vec![0.0; count],
-        first_index: first + 1,
-        beyond: values[last..(last + 8).min(n)].to_vec(),
-        complete: true,
-        ..Found::default()
-    };
-    let gap = (last..n).find(|&g| values[g] - values[g - 1] > 1e-6 * values[g]);
-    out.below = gap.unwrap_or(n);
-    out.found = out.below;
-    out.shift = gap.map_or(values[n - 1] * 1.01, |g| 0.5 * (values[g] + values[g - 1]));
-    for c in first..last {
-        let col = n - 1 - c;
-        let scale = 1.0 / mu[col].sqrt();
-        let mut x = Mat::<T>::from_fn(n, 1, |i, _| Scalar::scale(vectors[col * n + i], scale));
-        solve_upper_triangular_in_place(l.adjoint(), x.as_mut(), Par::Seq);
-        out.vectors.push((0..n).map(|i| x[(i, 0)]).collect());
-    }
-    out.solve_ms = clock.elapsed().as_secs_f64() * 1e3;
-    Ok(out)
+/// All eigenpairs of the Hermitian m×m matrix `a` (column by column; the lower triangle is read).
+///
+/// # Errors
+/// [`EigenError::Dense`] when the iteration fails, which needs numbers that are not finite.
+pub(super) fn hermitian<T: Field>(a: &[T], m: usize) -> Result<Eigen<T>, EigenError> {
+    let mut vectors = vec![T::default(); m * m];
+    let mut values = Diag::<T>::zeros(m);
+    let need =
+        self_adjoint_evd_scratch::<T>(m, ComputeEigenvectors::Yes, Par::Seq, Default::default());
+    self_adjoint_evd(
+        MatRef::from_column_major_slice(a, m, m),
+        values.as_mut(),
+        Some(MatMut::from_column_major_slice_mut(&mut vectors, m, m)),
+        Par::Seq,
+        MemStack::new(&mut MemBuffer::new(need)),
+        Default::default(),
+    )
+    .map_err(|_| EigenError::Dense("the iteration for eigenvalues did not end"))?;
+    let values = values.column_vector().iter().map(|x| x.re()).collect();
+    Ok(Eigen { values, vectors })
+}
+
+/// All eigenpairs of `k x = λ m x`, both n×n, Hermitian and column by column; vectors have
+/// xᴴ m x = 1.
+///
+/// # Errors
+/// [`EigenError::MassNotPositive`] when `m` is not positive definite.
+pub(super) fn generalised<T: Field>(k: &[T], m: &[T], n: usize) -> Result<Eigen<T>, EigenError> {
+    let seq = Par::Seq;
+    let mut l: Mat<T> = MatRef::from_column_major_slice(m, n, n).to_owned();
+    let need = llt::factor::cholesky_in_place_scratch::<T>(n, seq, Default::default());
+    llt::factor::cholesky_in_place(
+        l.as_mut(),
+        Default::default(),
+        seq,
+        MemStack::new(&mut MemBuffer::new(need)),
+        Default::default(),
+    )
+    .map_err(|_| EigenError::MassNotPositive {
+        place: "its Cholesky factor".into(),
+    })?;
+    // C = L⁻¹ K L⁻ᴴ, in two solves from the left: C = L⁻¹ (L⁻¹ K)ᴴ.
+    let mut c: Mat<T> = MatRef::from_column_major_slice(k, n, n).to_owned();
+    solve_lower_triangular_in_place(l.as_ref(), c.as_mut(), seq);
+    let mut c = c.adjoint().to_owned();
+    solve_lower_triangular_in_place(l.as_ref(), c.as_mut(), seq);
+    let flat: Vec<T> = (0..n)
+        .flat_map(|j| (0..n).map(move |i| (i, j)))
+        .map(|at| c[at])
+        .collect();
+    let mut eigen = hermitian(&flat, n)?;
+    solve_upper_triangular_in_place(
+        l.adjoint(),
+        MatMut::from_column_major_slice_mut(&mut eigen.vectors, n, n).as_dyn_stride_mut(),
+        seq,
+    );
+    Ok(eigen)
 }

@@ -1,377 +1,383 @@
-//! Block Lanczos on (K − σM)⁻¹M in the M inner product, with full orthogonalisation and thick
-//! restart (Wu & Simon 2000; block form after Golub & Underwood 1977).
+//! Block thick-restart Lanczos for (K − σM)⁻¹M in the inner product of M.
+//!
+//! Wu & Simon 2000 (SIAM J. Matrix Anal. Appl. 22, 602) for the restart; Ericsson & Ruhe 1980
+//! (Math. Comp. 35, 1251) for the shifted inverse and the free inverse step on Ritz vectors.
+//! Panels of B vectors, M-orthonormal to rounding: each new one is cleared of its two
+//! predecessors, then of everything.
 
-use super::blocks::{combine, project, symmetric_eigen};
+use super::EigenError;
+use super::dense::{Eigen, hermitian};
 use super::factor::Factor;
-use super::matvec::multiply;
-use super::{EigenError, Number};
-use crate::progress::Watch;
-use crate::units::Scalar;
-use sprs::CsMat;
+use super::field::Field;
+use super::panel::{
+    Panel, Square, accumulate, cholesky, gram, inverse, negative, product, square, times, update,
+};
+use super::pencil::{Noise, Pencil};
 
-/// Ritz pairs of one run: λ = σ + 1/θ.
-pub struct Ritz {
-    /// Values of λ.
+/// Vectors kept away from, and their products with M.
+#[derive(Default)]
+pub(super) struct Locked<T: Field, const B: usize> {
+    pub v: Vec<Panel<T, B>>,
+    pub mv: Vec<Panel<T, B>>,
+}
+
+/// A Ritz pair's value and how good it is.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Estimate {
+    /// The level.
     pub value: f64,
-    /// Relative residual |OP x − θx| / |θ|.
-    pub residual: f64,
-    /// Column in the small eigenvectors.
-    column: usize,
+    /// Bound on the distance to the nearest level: ‖residual‖_M of the shifted inverse, over θ².
+    pub error: f64,
+    /// Which column of the Ritz vectors.
+    pub column: usize,
 }
 
-/// The Krylov space and its projected operator.
-pub struct Lanczos<'a, T> {
-    mass: &'a CsMat<T>,
-    shift: f64,
-    n: usize,
-    b: usize,
-    /// Basis and M times it, vector after vector.
-    v: Vec<T>,
-    mv: Vec<T>,
-    /// Vectors whose images are known.
-    done: usize,
-    /// Projected operator, `cap` × `cap` by columns.
-    t: Vec<T>,
-    cap: usize,
-    /// Coupling of the last block to the one to come.
-    tail: Vec<T>,
-    random: u64,
-    small: Vec<T>,
-    /// Right-hand sides solved.
+/// A running Lanczos process. The last panel of `v` is not expanded yet.
+pub(super) struct Lanczos<'a, T: Field, const B: usize> {
+    pencil: &'a Pencil<'a, T>,
+    factor: &'a Factor<'a, T>,
+    locked: &'a Locked<T, B>,
+    v: Vec<Panel<T, B>>,
+    mv: Vec<Panel<T, B>>,
+    /// Column j of the projected operator: blocks 0..=j.
+    t: Vec<Vec<Square<T, B>>>,
+    /// Coupling of the last panel to the one before.
+    r: Square<T, B>,
+    /// Panels kept at the last restart.
+    kept: usize,
+    noise: Noise,
+    work: Panel<T, B>,
+    /// Right-hand sides solved for.
     pub solves: usize,
+    /// The space is exhausted: nothing new can be added.
+    pub spent: bool,
+    /// The largest factor by which the operator has stretched a vector: at most one over the
+    /// distance from the shift to the nearest level.
+    pub stretch: f64,
 }
 
-impl<'a, T: Number> Lanczos<'a, T> {
-    /// Starts with blocks of `b` vectors from `start` and noise; room for `cap` vectors.
-    pub fn new(
-        mass: &'a CsMat<T>,
-        shift: f64,
-        b: usize,
-        cap: usize,
-        start: &[Vec<T>],
+impl<'a, T: Field, const B: usize> Lanczos<'a, T, B> {
+    /// Starts from a block, or from a pseudo-random one.
+    pub fn start(
+        pencil: &'a Pencil<'a, T>,
+        factor: &'a Factor<'a, T>,
+        locked: &'a Locked<T, B>,
+        block: Option<Panel<T, B>>,
+        seed: u64,
     ) -> Result<Self, EigenError> {
-        let n = mass.rows();
-        let cap = cap.min(n);
-        let b = b.min(cap);
-        let mut out = Self {
-            mass,
-            shift,
-            n,
-            b,
+        let n = pencil.pattern.size();
+        let mut noise = Noise::new(seed);
+        let mut lanczos = Self {
+            pencil,
+            factor,
+            locked,
             v: Vec::new(),
             mv: Vec::new(),
-            done: 0,
-            t: vec![T::default(); cap * cap],
-            cap,
-            tail: Vec::new(),
-            random: 0x5eed_0f_10ca1,
-            small: Vec::new(),
+            t: Vec::new(),
+            r: square::<T, B>(),
+            kept: 0,
+            work: Vec::new(),
             solves: 0,
+            spent: false,
+            stretch: 0.0,
+            noise: Noise::new(seed + 1),
         };
-        let mut block = vec![T::default(); n * b];
-        for (k, s) in start.iter().enumerate() {
-            // old modes are summed into the block, so that each is present in some vector
-            let to = &mut block[(k % b) * n..][..n];
-            for (t, s) in to.iter_mut().zip(s) {
-                *t += *s;
+        let given = block.is_some();
+        let block = block.unwrap_or_else(|| noise.panel::<T, B>(n));
+        // Random vectors are rough; M⁻¹-free smoothing comes with the first solve. Given ones are
+        // taken as they are.
+        let mut w = block;
+        if !given {
+            let mut mw = Vec::new();
+            pencil.mass(&w, &mut mw);
+            lanczos.factor.solve(&mut mw, &mut lanczos.work);
+            lanczos.solves += B;
+            w = mw;
+        }
+        lanczos.clear(&mut w, None);
+        let (w, mw, _) = lanczos.normalise(w, 0.0)?;
+        lanczos.v.push(w);
+        lanczos.mv.push(mw);
+        Ok(lanczos)
+    }
+
+    /// Expanded columns.
+    pub fn columns(&self) -> usize {
+        self.t.len() * B
+    }
+
+    /// Clears `w` of every locked and basis vector; adds the coefficients to `column`.
+    fn clear(&self, w: &mut Panel<T, B>, column: Option<&mut Vec<Square<T, B>>>) {
+        let mv: Vec<_> = self.locked.mv.iter().chain(&self.mv).collect();
+        let v: Vec<_> = self.locked.v.iter().chain(&self.v).collect();
+        if v.is_empty() {
+            return;
+        }
+        let h = gram::<T, B>(&mv, w);
+        let minus: Vec<_> = h.iter().map(negative::<T, B>).collect();
+        update::<T, B>(w, &v, &minus);
+        if let Some(column) = column {
+            for (sum, h) in column.iter_mut().zip(&h[self.locked.v.len()..]) {
+                accumulate::<T, B>(sum, h);
             }
         }
-        let level = if start.is_empty() { 1.0 } else { 1e-3 };
-        for x in &mut block {
-            *x += <T as Scalar>::from_re(level * out.noise());
-        }
-        out.append(block)?;
-        Ok(out)
     }
 
-    fn noise(&mut self) -> f64 {
-        // xorshift64* (Vigna 2016), fixed seed
-        self.random ^= self.random >> 12;
-        self.random ^= self.random << 25;
-        self.random ^= self.random >> 27;
-        (self.random.wrapping_mul(0x2545_f491_4f6c_dd1d) >> 11) as f64 / (1u64 << 52) as f64 - 1.0
-    }
-
-    /// Size of the basis.
-    pub fn len(&self) -> usize {
-        self.v.len() / self.n
-    }
-
-    /// Whether another block fits.
-    pub fn has_room(&self) -> bool {
-        self.len() + self.b <= self.cap
-    }
-
-    /// Orthogonalises a block against the basis, orthonormalises it and appends it;
-    /// returns its coefficients on the basis and the factor R of the rest.
-    fn append(&mut self, mut w: Vec<T>) -> Result<(Vec<T>, Vec<T>), EigenError> {
-        let (n, b, m) = (self.n, w.len() / self.n, self.len());
-        let mut coefficients = vec![T::default(); m * b];
-        for _ in 0..2 {
-            let c = project(&self.mv, m, &w, b, n);
-            combine(&mut w, b, &self.v, m, &c, n, -1.0);
-            for (s, c) in coefficients.iter_mut().zip(&c) {
-                *s += *c;
-            }
-        }
-        let r = match self.cholesky_qr(&mut w, b) {
-            Some(r) => r,
-            None => self.gram_schmidt(&mut w, b)?,
-        };
-        Ok((coefficients, r))
-    }
-
-    /// Orthonormalises a block by the Cholesky factor of its Gram matrix and appends it; `None`,
-    /// with nothing appended, when its vectors are too nearly dependent for that.
-    fn cholesky_qr(&mut self, w: &mut [T], b: usize) -> Option<Vec<T>> {
-        let n = self.n;
-        let mut mw = vec![T::default(); n * b];
-        multiply(self.mass, w, &mut mw, b);
-        let g = project(&mw, b, w, b, n);
-        let r = upper_cholesky(&g, b)?;
-        let inverse = upper_inverse(&r, b);
-        for x in [(&*w, &mut self.v), (&mw, &mut self.mv)] {
-            let at = x.1.len();
-            x.1.resize(at + n * b, T::default());
-            combine(&mut x.1[at..], b, x.0, b, &inverse, n, 1.0);
-        }
-        Some(r)
-    }
-
-    /// Orthonormalises and appends vector by vector, twice each; a direction that vanishes is
-    /// replaced by noise and gets a zero in R.
-    fn gram_schmidt(&mut self, w: &mut [T], b: usize) -> Result<Vec<T>, EigenError> {
-        let n = self.n;
-        let m = self.len();
-        let mut r = vec![T::default(); b * b];
-        for (i, diagonal) in (0..b).map(|i| (i, i * b + i)) {
-            let mut replaced = false;
-            let mut tries = 0;
-            let first = loop {
-                let first = self.norm(&w[i * n..(i + 1) * n]);
-                let size = first.0;
-                for pass in 0..2 {
-                    let mut x = w[i * n..(i + 1) * n].to_vec();
-                    if pass == 1 || replaced {
-                        let c = project(&self.mv[..m * n], m, &x, 1, n);
-                        combine(&mut x, 1, &self.v[..m * n], m, &c, n, -1.0);
-                    }
-                    let c = project(&self.mv[m * n..], i, &x, 1, n);
-                    combine(&mut x, 1, &self.v[m * n..], i, &c, n, -1.0);
-                    if !replaced {
-                        for (k, c) in c.iter().enumerate() {
-                            r[i * b + k] += *c;
-                        }
-                    }
-                    w[i * n..(i + 1) * n].copy_from_slice(&x);
-                }
-                let (left, mx) = self.norm(&w[i * n..(i + 1) * n]);
-                if left > 1e-10 * size && left > 1e-250 {
-                    break (left, mx);
-                }
-                replaced = true;
-                tries += 1;
-                if tries > 8 {
-                    return Err(EigenError::IllPosed(
-                        "the mass is not positive definite".into(),
-                    ));
-                }
-                for k in 0..n {
-                    w[i * n + k] = Scalar::from_re(self.noise());
-                }
-            };
-            let (left, mx) = first;
-            r[diagonal] = if replaced {
-                T::default()
-            } else {
-                Scalar::from_re(left)
-            };
-            let inv = 1.0 / left;
-            self.v
-                .extend(w[i * n..(i + 1) * n].iter().map(|x| Scalar::scale(*x, inv)));
-            self.mv
-                .extend(mx.into_iter().map(|x| Scalar::scale(x, inv)));
-        }
-        Ok(r)
-    }
-
-    /// M-norm of a vector, and M times it.
-    fn norm(&self, x: &[T]) -> (f64, Vec<T>) {
-        let mut mx = vec![T::default(); self.n];
-        multiply(self.mass, x, &mut mx, 1);
-        let s: f64 = x
-            .iter()
-            .zip(&mx)
-            .map(|(a, b)| Scalar::re(Scalar::conj(*a) * *b))
-            .sum();
-        (s.max(0.0).sqrt(), mx)
-    }
-
-    /// One block step.
-    pub fn step(&mut self, factor: &mut Factor<'_, T>) -> Result<(), EigenError> {
-        let (n, from) = (self.n, self.done);
-        let b = self.len() - from;
-        let mut w = self.mv[from * n..].to_vec();
-        factor.solve(&mut w, b);
-        self.solves += b;
-        let m = self.len();
-        let (c, r) = self.append(w)?;
-        for j in 0..b {
-            for i in 0..m {
-                self.t[(from + j) * self.cap + i] = c[j * m + i];
-                self.t[i * self.cap + from + j] = Scalar::conj(c[j * m + i]);
-            }
-        }
-        self.done = m;
-        self.tail = r;
+    /// One step: solves for the last panel and adds the next.
+    pub fn expand(&mut self) -> Result<(), EigenError> {
+        let j = self.v.len() - 1;
+        let mut w = self.mv[j].clone();
+        self.factor.solve(&mut w, &mut self.work);
+        self.solves += B;
+        let mut column = vec![square::<T, B>(); j + 1];
+        let near = if j > self.kept { j - 1 } else { 0 };
+        let mv: Vec<_> = self.mv[near..].iter().collect();
+        let h = gram::<T, B>(&mv, &w);
+        let minus: Vec<_> = h.iter().map(negative::<T, B>).collect();
+        let whole = squared_norms::<T, B>(&h);
+        self.stretch = self.stretch.max(whole.sqrt());
+        update::<T, B>(&mut w, &self.v[near..].iter().collect::<Vec<_>>(), &minus);
+        column[near..].copy_from_slice(&h);
+        self.clear(&mut w, Some(&mut column));
+        let (w, mw, r) = self.normalise(w, whole)?;
+        self.t.push(column);
+        self.r = r;
+        self.v.push(w);
+        self.mv.push(mw);
         Ok(())
     }
 
-    /// Ritz values, and their residuals.
-    pub fn ritz(&mut self) -> Result<Vec<Ritz>, EigenError> {
-        let m = self.done;
-        let mut t = vec![T::default(); m * m];
-        for j in 0..m {
-            for i in 0..m {
-                let (a, b) = (self.t[j * self.cap + i], self.t[i * self.cap + j]);
-                t[j * m + i] = Scalar::scale(a + Scalar::conj(b), 0.5);
-            }
-        }
-        let (theta, vectors) = symmetric_eigen(&t, m)?;
-        let b = self.len() - m;
-        let out = theta
-            .iter()
-            .enumerate()
-            .filter(|(_, th)| th.abs() > 1e-300)
-            .map(|(k, th)| {
-                // R times the last block of the vector
-                let y = &vectors[k * m..(k + 1) * m];
-                let mut s = 0.0;
-                for i in 0..b {
-                    let x: T = (0..b).map(|j| self.tail[j * b + i] * y[m - b + j]).sum();
-                    s += Scalar::abs2(x);
-                }
-                Ritz {
-                    value: self.shift + 1.0 / th,
-                    residual: s.sqrt() / th.abs(),
-                    column: k,
-                }
-            })
-            .collect();
-        self.small = vectors;
-        Ok(out)
-    }
-
-    /// Vectors of the given Ritz pairs, M-normalised, one after the other.
-    pub fn vectors(&self, pairs: &[&Ritz]) -> Vec<T> {
-        let (n, m, k) = (self.n, self.done, pairs.len());
-        let mut c = Vec::with_capacity(m * k);
-        for p in pairs {
-            c.extend_from_slice(&self.small[p.column * m..(p.column + 1) * m]);
-        }
-        let mut out = vec![T::default(); n * k];
-        combine(&mut out, k, &self.v[..m * n], m, &c, n, 1.0);
-        out
-    }
-
-    /// Keeps the given Ritz pairs and the block to come.
-    pub fn restart(&mut self, keep: &[&Ritz]) {
-        let (n, m, k) = (self.n, self.done, keep.len());
-        let b = self.len() - m;
-        let mut v = self.vectors(keep);
-        let mut mv = vec![T::default(); n * k];
-        multiply(self.mass, &v, &mut mv, k);
-        v.extend_from_slice(&self.v[m * n..]);
-        mv.extend_from_slice(&self.mv[m * n..]);
-        self.t.fill(T::default());
-        for (j, p) in keep.iter().enumerate() {
-            self.t[j * self.cap + j] = Scalar::from_re(1.0 / (p.value - self.shift));
-            let y = &self.small[p.column * m..(p.column + 1) * m];
-            for i in 0..b {
-                let x: T = (0..b).map(|l| self.tail[l * b + i] * y[m - b + l]).sum();
-                self.t[j * self.cap + k + i] = x;
-                self.t[(k + i) * self.cap + j] = Scalar::conj(x);
-            }
-        }
-        self.v = v;
-        self.mv = mv;
-        self.done = k;
-        self.tail = vec![T::default(); b * b];
-    }
-
-    /// Runs until the pairs asked for have converged.
-    ///
-    /// `satisfied` looks at the Ritz pairs and says how many of the wanted are there, of how many.
-    pub fn run(
+    /// Splits `w` into an M-orthonormal panel and R with w = q R. Columns that carry nothing new
+    /// beyond rounding (squared norm `whole` before clearing) are replaced by random ones, with
+    /// zeros in R. Gives q, M q and R.
+    #[allow(clippy::type_complexity)]
+    fn normalise(
         &mut self,
-        factor: &mut Factor<'_, T>,
-        keep: usize,
-        watch: &Watch,
-        mut satisfied: impl FnMut(&[Ritz]) -> (usize, usize),
-    ) -> Result<Vec<Ritz>, EigenError> {
-        let mut next_look = keep + keep / 2 + 2 * self.b;
-        for _ in 0..100_000 {
-            self.step(factor)?;
-            if self.done < next_look && self.has_room() {
+        mut w: Panel<T, B>,
+        whole: f64,
+    ) -> Result<(Panel<T, B>, Panel<T, B>, Square<T, B>), EigenError> {
+        let n = w.len();
+        let mut total = square::<T, B>();
+        for (c, row) in total.iter_mut().enumerate() {
+            T::put(row, c, T::from_re(1.0));
+        }
+        let mut mw = Vec::new();
+        for attempt in 0..4 + 2 * B {
+            self.pencil.mass(&w, &mut mw);
+            let g = gram::<T, B>(&[&mw], &w)[0];
+            for (c, g) in g.iter().enumerate() {
+                // A negative M-norm beyond rounding proves that M is not positive.
+                let d = T::at(g, c).re();
+                if d < 0.0 || d.is_nan() {
+                    let place = "the norm of an iterated vector".into();
+                    return Err(EigenError::MassNotPositive { place });
+                }
+            }
+            // Rounding leaves 1e-16 of the whole; what is below 1e-13 of it is noise.
+            let noise = (0..B).find(|&c| T::at(&g[c], c).re() <= 1e-26 * whole);
+            let (column, r) = match (noise, cholesky::<T, B>(&g, 1e-16)) {
+                (None, Ok(r)) => {
+                    let ratio = (0..B)
+                        .map(|c| T::at(&r[c], c).abs2() / T::at(&g[c], c).re())
+                        .fold(1.0, f64::min);
+                    let back = inverse::<T, B>(&r);
+                    times::<T, B>(&mut w, &back);
+                    total = product::<T, B>(&r, &total);
+                    if ratio > 1e-4 {
+                        times::<T, B>(&mut mw, &back);
+                        return Ok((w, mw, total));
+                    }
+                    // Nearly dependent columns were blown up: clear and normalise once more.
+                    self.clear(&mut w, None);
+                    continue;
+                }
+                (Some(c), _) => (c, None),
+                (None, Err(c)) => (c, Some(partial::<T, B>(&g, c))),
+            };
+            if attempt > 2 * B {
+                self.spent = true;
+                return Ok((w, mw, square::<T, B>()));
+            }
+            self.replace(&mut w, column, n);
+            let mut s = square::<T, B>();
+            for (c, row) in s.iter_mut().enumerate() {
+                T::put(row, c, T::from_re(if c == column { 0.0 } else { 1.0 }));
+                if let Some(coefficients) = &r {
+                    T::put(row, column, coefficients[c]);
+                }
+            }
+            total = product::<T, B>(&s, &total);
+        }
+        self.spent = true;
+        Ok((w, mw, square::<T, B>()))
+    }
+
+    /// Puts a random vector, cleared of everything and of M-norm about one, into a column.
+    fn replace(&mut self, w: &mut Panel<T, B>, column: usize, n: usize) {
+        let mut fresh: Panel<T, B> = self.noise.panel::<T, B>(n);
+        self.clear(&mut fresh, None);
+        self.clear(&mut fresh, None);
+        for (w, f) in w.iter_mut().zip(&fresh) {
+            T::put(w, column, T::at(f, column));
+        }
+    }
+
+    /// The eigenpairs of the projected operator.
+    pub fn ritz(&self) -> Result<(Eigen<T>, Vec<Estimate>), EigenError> {
+        let m = self.columns();
+        let mut a = vec![T::default(); m * m];
+        for (j, column) in self.t.iter().enumerate() {
+            for (k, block) in column.iter().enumerate() {
+                for (p, row) in block.iter().enumerate() {
+                    for (q, mirror) in block.iter().enumerate() {
+                        let x = T::at(row, q);
+                        let (i, c) = (k * B + p, j * B + q);
+                        if k == j {
+                            // Hermitian up to rounding; make it so.
+                            let half = (x + T::at(mirror, p).conj()).scale(0.5);
+                            a[c * m + i] = half;
+                        } else {
+                            a[c * m + i] = x;
+                            a[i * m + c] = x.conj();
+                        }
+                    }
+                }
+            }
+        }
+        let eigen = hermitian(&a, m)?;
+        let mut estimates = Vec::with_capacity(m);
+        for column in 0..m {
+            let theta = eigen.values[column];
+            if theta == 0.0 {
                 continue;
             }
-            let pairs = self.ritz()?;
-            let (have, want) = satisfied(&pairs);
-            watch.step(have, want, "levels")?;
-            let full = self.done + self.b >= self.n;
-            if have >= want || full {
-                return Ok(pairs);
-            }
-            // converged pairs tell how far it is
-            let missing = (want - have).max(self.b);
-            next_look = self.done + (missing / 3).clamp(self.b, 8 * self.b);
-            if !self.has_room() {
-                let mut best: Vec<&Ritz> = pairs.iter().collect();
-                best.sort_by(|a, b| {
-                    (a.value - self.shift)
-                        .abs()
-                        .total_cmp(&(b.value - self.shift).abs())
-                });
-                best.truncate((keep + keep / 4 + 4).min(self.cap - 3 * self.b));
-                self.restart(&best);
-                next_look = self.len() + (self.cap - self.len()) / 2;
-            }
+            let rho = self
+                .coupling(&eigen, column)
+                .iter()
+                .map(|x| x.abs2())
+                .sum::<f64>()
+                .sqrt();
+            estimates.push(Estimate {
+                value: self.factor.shift + 1.0 / theta,
+                error: rho / (theta * theta),
+                column,
+            });
         }
-        Err(EigenError::Failed("no convergence".into()))
+        estimates.sort_by(|a, b| a.value.total_cmp(&b.value));
+        Ok((eigen, estimates))
     }
-}
 
-/// R of G = RᴴR, by columns; `None` when a pivot is below a millionth of its diagonal entry.
-fn upper_cholesky<T: Number>(g: &[T], b: usize) -> Option<Vec<T>> {
-    let mut r = vec![T::default(); b * b];
-    for j in 0..b {
-        for i in 0..=j {
-            let s: T = (0..i)
-                .map(|k| Scalar::conj(r[i * b + k]) * r[j * b + k])
-                .sum();
-            let v = g[j * b + i] - s;
-            if i < j {
-                r[j * b + i] = v / r[i * b + i];
-            } else {
-                let (left, whole) = (Scalar::re(v), Scalar::re(g[j * b + j]));
-                if !(left > 1e-6 * whole && whole > 1e-280) {
-                    return None;
+    /// R times the last rows of a Ritz vector: its residual, in the last panel.
+    fn coupling(&self, eigen: &Eigen<T>, column: usize) -> [T; B] {
+        let m = self.columns();
+        let last = &eigen.vectors[column * m + m - B..column * m + m];
+        std::array::from_fn(|p| {
+            let mut sum = T::default();
+            for (q, &s) in last.iter().enumerate() {
+                sum += T::at(&self.r[p], q) * s;
+            }
+            sum
+        })
+    }
+
+    /// Panels of combinations of the basis: the chosen Ritz vectors, or with `improve` those
+    /// after one more (free) inverse step, normalised. Empty columns are zero.
+    fn combine(
+        &self,
+        eigen: &Eigen<T>,
+        chosen: &[usize],
+        improve: bool,
+        basis: &[Panel<T, B>],
+    ) -> Vec<Panel<T, B>> {
+        let m = self.columns();
+        let n = basis[0].len();
+        chosen
+            .chunks(B)
+            .map(|group| {
+                let mut squares = vec![square::<T, B>(); self.v.len()];
+                for (c, &column) in group.iter().enumerate() {
+                    let s = &eigen.vectors[column * m..(column + 1) * m];
+                    for (i, &s) in s.iter().enumerate() {
+                        T::put(&mut squares[i / B][i % B], c, s);
+                    }
+                    if improve {
+                        let theta = eigen.values[column];
+                        let tail = self.coupling(eigen, column).map(|x| x.scale(1.0 / theta));
+                        let norm = (1.0 + tail.iter().map(|x| x.abs2()).sum::<f64>())
+                            .sqrt()
+                            .recip();
+                        for (p, &x) in tail.iter().enumerate() {
+                            T::put(&mut squares[self.v.len() - 1][p], c, x);
+                        }
+                        for square in &mut squares {
+                            for row in square {
+                                let x = T::at(row, c).scale(norm);
+                                T::put(row, c, x);
+                            }
+                        }
+                    }
                 }
-                r[j * b + j] = Scalar::from_re(left.sqrt());
-            }
+                let mut x = vec![T::zeros::<B>(); n];
+                update::<T, B>(&mut x, &basis.iter().collect::<Vec<_>>(), &squares);
+                x
+            })
+            .collect()
+    }
+
+    /// The chosen Ritz vectors, improved by a free inverse step, and their products with M.
+    pub fn vectors(&self, eigen: &Eigen<T>, chosen: &[usize]) -> Locked<T, B> {
+        Locked {
+            v: self.combine(eigen, chosen, true, &self.v),
+            mv: self.combine(eigen, chosen, true, &self.mv),
         }
     }
-    Some(r)
+
+    /// Thick restart: keeps the chosen Ritz vectors (a multiple of B of them) and the last panel.
+    pub fn restart(&mut self, eigen: &Eigen<T>, chosen: &[usize]) {
+        let v = self.combine(eigen, chosen, false, &self.v);
+        let mv = self.combine(eigen, chosen, false, &self.mv);
+        let (last_v, last_mv) = (self.v.pop(), self.mv.pop());
+        self.kept = v.len();
+        self.v = v.into_iter().chain(last_v).collect();
+        self.mv = mv.into_iter().chain(last_mv).collect();
+        self.t = (0..self.kept)
+            .map(|j| {
+                let mut column = vec![square::<T, B>(); j + 1];
+                for (c, row) in column[j].iter_mut().enumerate() {
+                    T::put(row, c, T::from_re(eigen.values[chosen[j * B + c]]));
+                }
+                column
+            })
+            .collect();
+    }
 }
 
-/// R⁻¹ of an upper triangle, by columns.
-fn upper_inverse<T: Number>(r: &[T], b: usize) -> Vec<T> {
-    let mut x = vec![T::default(); b * b];
-    for j in 0..b {
-        for i in (0..=j).rev() {
-            let one = if i == j { 1.0 } else { 0.0 };
-            let s: T = (i + 1..=j).map(|k| r[k * b + i] * x[j * b + k]).sum();
-            x[j * b + i] = (<T as Scalar>::from_re(one) - s) / r[i * b + i];
+/// The largest squared norm of the columns a set of coefficients stands for.
+fn squared_norms<T: Field, const B: usize>(h: &[Square<T, B>]) -> f64 {
+    (0..B)
+        .map(|c| {
+            h.iter()
+                .flatten()
+                .map(|row| T::at(row, c).abs2())
+                .sum::<f64>()
+        })
+        .fold(0.0, f64::max)
+}
+
+/// Coefficients of column `c` over the columns before it, by Gram matrix `g`; zero elsewhere.
+fn partial<T: Field, const B: usize>(g: &Square<T, B>, c: usize) -> [T; B] {
+    let mut x = [T::default(); B];
+    // Gauss–Seidel on the leading block: it is well conditioned, or an earlier column would
+    // have failed first; a few sweeps leave less than the noise that is thrown away anyway.
+    for _ in 0..200 {
+        for i in 0..c {
+            let mut sum = T::at(&g[i], c);
+            for (k, &x) in x.iter().enumerate().take(c) {
+                if k != i {
+                    sum -= T::at(&g[i], k) * x;
+                }
+            }
+            x[i] = sum.scale(1.0 / T::at(&g[i], i).re());
         }
     }
     x

@@ -1,40 +1,46 @@
-//! Sparse matrix times a block of vectors.
+//! Products of a Hermitian sparse matrix, stored as its upper triangle, with blocks of vectors.
+//!
+//! Each stored entry serves both triangles, so the matrix is read once at half its size: several
+//! times faster than a product of both triangles with one vector at a time.
 
-use super::Number;
-use sprs::CsMat;
+use super::field::{Field, run};
+use super::panel::Panel;
 
-/// y = A x for `b` vectors stored one after the other.
-pub fn multiply<T: Number>(a: &CsMat<T>, x: &[T], y: &mut [T], b: usize) {
-    let n = a.rows();
-    let starts = a.indptr();
-    let starts = starts.raw_storage();
-    let (columns, values) = (a.indices(), a.data());
-    for c in 0..b {
-        let (x, y) = (&x[c * n..(c + 1) * n], &mut y[c * n..(c + 1) * n]);
-        for i in 0..n {
-            let (s, e) = (starts[i], starts[i + 1]);
-            y[i] = dot(&values[s..e], &columns[s..e], x);
+#[inline(always)]
+fn kernel<T: Field, const B: usize>(
+    fused: bool,
+    start: &[u32],
+    columns: &[u32],
+    values: &[T],
+    x: &[T::Row<B>],
+    y: &mut [T::Row<B>],
+) {
+    y.fill(T::zeros::<B>());
+    for i in 0..x.len() {
+        let (a, b) = (start[i] as usize, start[i + 1] as usize);
+        let own = x[i];
+        let mut acc = T::zeros::<B>();
+        // The diagonal entry comes first in every row.
+        T::axpy(fused, &mut acc, T::from_re(values[a].re()), &own);
+        for (&j, &value) in columns[a + 1..b].iter().zip(&values[a + 1..b]) {
+            T::axpy(fused, &mut acc, value, &x[j as usize]);
+            T::axpy_conj(fused, &mut y[j as usize], value, &own);
         }
+        T::axpy(fused, &mut y[i], T::from_re(1.0), &acc);
     }
 }
 
-#[inline]
-fn dot<T: Number>(values: &[T], columns: &[usize], x: &[T]) -> T {
-    // four sums, so that additions do not wait for each other
-    let mut s = [T::default(); 4];
-    let v = values.chunks_exact(4);
-    let c = columns.chunks_exact(4);
-    let rest: T = v
-        .remainder()
-        .iter()
-        .zip(c.remainder())
-        .map(|(v, &c)| *v * x[c])
-        .sum();
-    for (v, c) in v.zip(c) {
-        s[0] += v[0] * x[c[0]];
-        s[1] += v[1] * x[c[1]];
-        s[2] += v[2] * x[c[2]];
-        s[3] += v[3] * x[c[3]];
-    }
-    s[0] + s[1] + (s[2] + s[3]) + rest
+/// `y = A x`; the upper triangle of A in compressed rows, diagonal first.
+pub(super) fn multiply<T: Field, const B: usize>(
+    start: &[u32],
+    columns: &[u32],
+    values: &[T],
+    x: &Panel<T, B>,
+    y: &mut Panel<T, B>,
+) {
+    y.resize(x.len(), T::zeros::<B>());
+    run(
+        #[inline(always)]
+        |fused| kernel::<T, B>(fused, start, columns, values, x, y),
+    );
 }

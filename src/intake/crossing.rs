@@ -1,6 +1,6 @@
 //! Whether closed polygons cross themselves or each other.
 
-use crate::geometry::{Box2, Point};
+use crate::geometry::{Box2, Point, pt};
 
 /// Two edges that meet where they should not, by number, and the place.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -68,10 +68,12 @@ impl Tree {
             b.include(c.hi);
         }
         for k in (1..leaves).rev() {
-            let (mut b, c) = (boxes[2 * k], boxes[2 * k + 1]);
-            b.include(c.lo);
-            b.include(c.hi);
-            boxes[k] = b;
+            let (b, c) = (boxes[2 * k], boxes[2 * k + 1]);
+            // The corners of an empty box are at infinity and must not be included.
+            boxes[k] = Box2 {
+                lo: pt(b.lo.x.min(c.lo.x), b.lo.y.min(c.lo.y)),
+                hi: pt(b.hi.x.max(c.hi.x), b.hi.y.max(c.hi.y)),
+            };
         }
         Self { boxes, leaves }
     }
@@ -169,7 +171,6 @@ fn meet(edges: &[Edge], i: usize, j: usize) -> Option<Crossing> {
 #[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
-    use crate::geometry::pt;
     use proptest::prelude::*;
 
     #[test]

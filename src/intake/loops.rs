@@ -1,27 +1,137 @@
 //! From closed point sequences to an outline: orientation by nesting, pieces by fitting.
 
 use super::Taken;
+use super::crossing::crossing;
 use super::fit::{self, Trace};
 use super::trace::area;
-use crate::geometry::{Box2, Loop, Outline, Piece, Point};
+use crate::geometry::{Box2, GeometryError, Loop, Outline, Piece, Point};
+
+/// Crossings of fitted loops that are looked for one by one before fitting is given up.
+const MOST_ROUNDS: usize = 50;
+/// Chords a curve is replaced by to see whether it crosses another.
+const CHORDS: usize = 16;
 
 /// An outline from closed, non-crossing polygons that run either way round; with `smooth`, curves
 /// within that distance of them.
 pub(super) fn taken(mut polygons: Vec<Vec<Point>>, smooth: Option<f64>) -> Taken {
     orient(&mut polygons);
-    let trace = smooth.map(Trace::points);
-    let loops = polygons
+    match smooth {
+        Some(tolerance) => fitted(&polygons, &Trace::points(tolerance)),
+        None => Taken {
+            outline: Outline {
+                loops: polygons.iter().map(|p| straight(p)).collect(),
+            },
+            notes: Vec::new(),
+        },
+    }
+}
+
+/// The outline fitted to closed, non-crossing polygons. A loop that is too short to fit, or would
+/// cross itself or another one when fitted, stays as it is.
+pub(super) fn fitted(polygons: &[Vec<Point>], trace: &Trace) -> Taken {
+    let mut loops: Vec<Option<Loop>> = polygons
         .iter()
-        .map(|p| {
-            trace
-                .and_then(|t| fit::fit(p, &t))
-                .unwrap_or_else(|| straight(p))
-        })
+        .map(|p| fit::fit(p, trace).filter(|l| alike(area(&chords(l)), area(p))))
+        .collect();
+    let mut kept = 0;
+    for round in 0.. {
+        let mut crossed = at_fault(&loops, polygons);
+        if round >= MOST_ROUNDS && !crossed.is_empty() {
+            crossed = (0..polygons.len()).collect();
+        }
+        let before = kept;
+        for k in crossed {
+            kept += usize::from(loops[k].take().is_some());
+        }
+        if kept == before {
+            break;
+        }
+    }
+    let notes = (kept > 0)
+        .then(|| format!("{kept} loop(s) stay polygons as traced: smoothed, they would cross"));
+    let loops = loops
+        .into_iter()
+        .zip(polygons)
+        .map(|(l, p)| l.unwrap_or_else(|| straight(p)))
         .collect();
     Taken {
         outline: Outline { loops },
-        notes: Vec::new(),
+        notes: notes.into_iter().collect(),
     }
+}
+
+/// The fitted loops that have to do with a crossing, if there is one: by chords, which is quick,
+/// and then exactly. Traced polygons may touch where two pixels meet at a corner; that is no
+/// fault of the fit.
+fn at_fault(loops: &[Option<Loop>], polygons: &[Vec<Point>]) -> Vec<usize> {
+    let drawn: Vec<Vec<Point>> = loops
+        .iter()
+        .zip(polygons)
+        .map(|(l, p)| l.as_ref().map_or_else(|| p.clone(), chords))
+        .collect();
+    let is_fitted = |k: &usize| loops[*k].is_some();
+    if let Some(found) = crossing(&drawn) {
+        return found
+            .edges
+            .into_iter()
+            .map(|e| owner(&drawn, e))
+            .filter(is_fitted)
+            .collect();
+    }
+    let outline = Outline {
+        loops: loops
+            .iter()
+            .zip(polygons)
+            .map(|(l, p)| l.clone().unwrap_or_else(|| straight(p)))
+            .collect(),
+    };
+    let Err(GeometryError::CrossesItself { at }) = outline.check(0.0) else {
+        return Vec::new();
+    };
+    let distance = |k: usize| {
+        let pieces = outline.loops[k].pieces.iter();
+        pieces
+            .map(|p| p.nearest(at).1)
+            .fold(f64::INFINITY, f64::min)
+    };
+    (0..loops.len())
+        .filter(is_fitted)
+        .map(|k| (distance(k), k))
+        .min_by(|a, b| a.0.total_cmp(&b.0))
+        .map(|n| n.1)
+        .into_iter()
+        .collect()
+}
+
+/// Whether a fitted loop still encloses what it did, give or take a half.
+fn alike(fitted: f64, traced: f64) -> bool {
+    (fitted / traced - 1.0).abs() < 0.5
+}
+
+/// A loop as a polygon.
+fn chords(whole: &Loop) -> Vec<Point> {
+    let mut out = Vec::new();
+    for piece in &whole.pieces {
+        let n = if matches!(piece, Piece::Line { .. }) {
+            1
+        } else {
+            CHORDS
+        };
+        out.extend((0..n).map(|k| piece.at(k as f64 / n as f64)));
+    }
+    out
+}
+
+/// The polygon an edge belongs to, edges being counted through all of them.
+fn owner(polygons: &[Vec<Point>], edge: usize) -> usize {
+    let mut first = 0;
+    polygons
+        .iter()
+        .position(|p| {
+            first += p.len();
+            edge < first
+        })
+        .unwrap_or(0)
 }
 
 /// A loop of lines and Bézier curves with every length multiplied.

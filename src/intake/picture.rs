@@ -1,6 +1,6 @@
 //! Outlines from a PNG mask.
 
-use super::fit::{self, Trace};
+use super::fit::Trace;
 use super::grey::GreyMap;
 use super::trace::{area, contours};
 use super::{IntakeError, Taken, loops};
@@ -88,11 +88,20 @@ pub fn picture(path: &Path, reading: &Reading) -> Result<Taken, IntakeError> {
     if let Some(tolerance) = reading.smooth {
         trace = trace.loosened(tolerance);
     }
-    let loops = found
-        .iter()
-        .map(|c| fit::fit(c, &trace).unwrap_or_else(|| loops::straight(c)))
-        .map(|l| loops::scaled(&l, reading.pixel))
-        .collect();
-    let outline = Outline { loops };
+    let fitted = loops::fitted(&found, &trace);
+    notes.extend(
+        fitted
+            .notes
+            .iter()
+            .map(|n| format!("{}: {n}", path.display())),
+    );
+    let outline = Outline {
+        loops: fitted
+            .outline
+            .loops
+            .iter()
+            .map(|l| loops::scaled(l, reading.pixel))
+            .collect(),
+    };
     Ok(Taken { outline, notes })
 }

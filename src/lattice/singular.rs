@@ -46,6 +46,8 @@ pub struct CornerSpace {
     pub functions: Vec<Singular>,
     /// Pieces that start and end here, numbered through the loops.
     pub edges: [u32; 2],
+    /// Whether an edge is curved: then the functions do not vanish on the edges.
+    pub curved: bool,
     /// Largest multiple or shift among the functions.
     most: usize,
 }
@@ -83,6 +85,7 @@ impl CornerSpace {
             radius,
             functions,
             edges,
+            curved,
             most,
         }
     }

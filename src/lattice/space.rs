@@ -57,7 +57,7 @@ impl Space {
         let at = |i: usize, j: usize| i * size[1] + j;
         let mut alive = vec![false; size[0] * size[1]];
         let mut inner = vec![false; size[0] * size[1]];
-        let mut mark = |flags: &mut [bool], i: usize, j: usize| {
+        let mark = |flags: &mut [bool], i: usize, j: usize| {
             for a in 0..=p {
                 flags[at(i + a, j)..=at(i + a, j + p)].fill(true);
             }

@@ -53,6 +53,11 @@ impl Splits {
         self.cells.len()
     }
 
+    /// Whether no cell is split.
+    pub fn is_empty(&self) -> bool {
+        self.cells.is_empty()
+    }
+
     /// Splits a cell, and whatever else keeps neighbours within one level.
     /// Returns whether anything changed.
     pub fn split(&mut self, key: Key) -> bool {

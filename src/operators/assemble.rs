@@ -66,7 +66,15 @@ fn fill(lattice: &Lattice, n: usize, t: &Tables) -> [Band; 2] {
         kernel.element(&c.weights, region.h, &mut element);
         block.fill(0.0);
         let low = region.low(c.i, c.j);
-        add_wall(&mut block, &mut traces, &lattice.trace.pieces, &c.parts, low, region.h, pen);
+        add_wall(
+            &mut block,
+            &mut traces,
+            &lattice.trace.pieces,
+            &c.parts,
+            low,
+            region.h,
+            pen,
+        );
         symmetrise(&mut block, b);
         for (e, w) in element.stiffness.iter_mut().zip(&block) {
             *e += w;

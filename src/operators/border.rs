@@ -221,8 +221,8 @@ impl Border {
         for &c in &s.cloud.corners {
             let c = &self.corners[c as usize];
             let e = ends(c);
-            // a corner's own functions vanish on its own straight edges
-            needed |= !(straight && (e[0] || e[1]));
+            // functions of a corner with straight edges vanish on these
+            needed |= c.curved || !(straight && (e[0] || e[1]));
             for k in 0..2 {
                 let near = c.distance(part.ends[0]).min(c.distance(part.ends[1])) < 3.0 * h;
                 at[k] |= e[k] && near;
@@ -390,8 +390,8 @@ fn own_block(s: &Sampled, out: &mut [f64]) {
     for start in (0..count).step_by(CHUNK) {
         let here = CHUNK.min(count - start);
         for f in 0..nf {
-            for k in 0..here {
-                factors[k] = s.cloud.weights[start + k] * s.values[(start + k) * wide + nf + f];
+            for (k, factor) in factors[..here].iter_mut().enumerate() {
+                *factor = s.cloud.weights[start + k] * s.values[(start + k) * wide + nf + f];
             }
             for from in [f, nf + f] {
                 let to = &mut out[f * wide + from..][..nf - f];

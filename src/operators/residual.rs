@@ -269,6 +269,7 @@ fn axpy(to: &mut [f64], a: f64, x: &[f64]) {
 }
 
 /// Jumps of the normal derivative across faces, half to each side.
+#[allow(clippy::needless_range_loop)] // both sides are indexed in step
 fn jumps(
     lattice: &Lattice,
     f: &Functions,

@@ -42,6 +42,8 @@ impl Picture {
         let mut encoder = png::Encoder::new(&mut bytes, self.page.width(), self.page.height());
         encoder.set_color(png::ColorType::Rgb);
         encoder.set_depth(png::BitDepth::Eight);
+        // on smooth maps one filter does as well as choosing among five, in four fifths of the time
+        encoder.set_filter(png::Filter::Up);
         encoder.set_source_srgb(png::SrgbRenderingIntent::Perceptual);
         encoder.set_pixel_dims(Some(png::PixelDimensions {
             xppu: DENSITY,

@@ -54,6 +54,17 @@ pub fn paint(rgb: [u8; 3]) -> Paint<'static> {
     paint
 }
 
+/// What was modelled, left of the colour bar: smaller type before a word is lost.
+pub fn model(page: &mut Page, left: f32, baseline: f32, text: &str) {
+    let room = 525.0 * page.unit;
+    let full = 0.88 * SMALL * page.unit;
+    let fit = room / page.face.width(text, full).max(1.0);
+    let size = full * fit.clamp(0.75, 1.0);
+    let text = page.face.fitted(text, size, room + 1.0);
+    let muted = page.palette.muted;
+    page.text(&text, size, (left, baseline), Anchor::Start, muted);
+}
+
 /// A bar of a round length, at most `room` pixels long, its left end at `left`; the label above.
 /// `scale` is pixels to a unit of length.
 pub fn scale_bar(page: &mut Page, left: f32, baseline: f32, room: f32, scale: f64, units: &Units) {

@@ -2,7 +2,7 @@
 
 use super::encode::Picture;
 use super::field::Field;
-use super::furniture::{Page, SMALL, colour_bar, paint, scale_bar};
+use super::furniture::{Page, colour_bar, model, paint, scale_bar};
 use super::nodes::nodal_lines;
 use super::place::{Area, View, coverage};
 use super::text::{Anchor, Type, mix};
@@ -241,17 +241,7 @@ fn footer(page: &mut Page, foot: f32, view: &View, style: &Style, caption: &Capt
         view.scale,
         &caption.units,
     );
-    if !caption.model.is_empty() {
-        let size = 0.88 * SMALL * u;
-        let text = page.face.fitted(&caption.model, size, 500.0 * u);
-        page.text(
-            &text,
-            size,
-            (left, foot + 107.0 * u),
-            Anchor::Start,
-            page.palette.muted,
-        );
-    }
+    model(page, left, foot + 107.0 * u, &caption.model);
 }
 
 fn level_text(level: &Level, caption: &Caption, show: Show) -> Vec<(&'static str, String)> {

@@ -2,7 +2,7 @@
 
 use super::encode::Picture;
 use super::field::Field;
-use super::furniture::{Page, SMALL, colour_bar, scale_bar};
+use super::furniture::{Page, SMALL, colour_bar, model, scale_bar};
 use super::map::{LINE, Style, TITLE, paint_mode};
 use super::place::{Area, View};
 use super::text::{Anchor, Type};
@@ -185,17 +185,7 @@ fn frame(page: &mut Page, (scale, room): (f64, f32), style: &Style, caption: &Ca
     };
     colour_bar(page, bar, style, &caption.units);
     scale_bar(page, left, foot + 55.0 * u, room, scale, &caption.units);
-    if !caption.model.is_empty() {
-        let size = 0.88 * SMALL * u;
-        let text = page.face.fitted(&caption.model, size, 500.0 * u);
-        page.text(
-            &text,
-            size,
-            (left, foot + 85.0 * u),
-            Anchor::Start,
-            page.palette.muted,
-        );
-    }
+    model(page, left, foot + 85.0 * u, &caption.model);
 }
 
 #[cfg(test)]

@@ -1,8 +1,9 @@
 //! Changes to single values of a document's text that leave everything else as it was written.
 
+use super::kinds::KINDS;
 use super::near;
-use super::read::{FINISH, MATERIAL, SOLVE};
-use super::steps::{KINDS, PLACING};
+use super::placing::PLACING;
+use super::read::{FINISH, LATER, MATERIAL, SOLVE};
 use toml_edit::{DocumentMut, Item, Table, TableLike, Value};
 
 /// What is wrong, and what would be right.
@@ -135,6 +136,10 @@ fn locate<'d>(
                 None => Err(nowhere(&parts)),
             }
         }
+        [table, ..] if LATER.iter().any(|l| l.0 == table) => Err((
+            format!("`{table}` comes in a later version"),
+            "this version solves hard walls without potential and field".to_owned(),
+        )),
         ["outline", number, key, ref rest @ ..] => step(document, number, key, rest, &parts),
         _ => Err(nowhere(&parts)),
     }

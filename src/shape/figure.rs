@@ -2,7 +2,7 @@
 
 use super::build::{FigureError, Traces};
 use super::model::{Figure, Placement, Step};
-use crate::geometry::{Outline, Point, Similarity};
+use crate::geometry::{GeometryError, Outline, Point, Similarity};
 use crate::intake;
 use std::path::Path;
 
@@ -30,14 +30,29 @@ pub(super) fn placed(
             most: MOST_PIECES,
         });
     }
-    let mut all = one.clone();
-    for k in 1..repeat.count {
+    let copies = (0..repeat.count).map(|k| {
         let k = k as f64;
         let step = Similarity::turned(repeat.about, (k * repeat.turn).to_radians())
             .then(&Similarity::moved(repeat.shift * k));
-        all = all.add(&one.transformed(&step))?;
+        one.transformed(&step)
+    });
+    Ok(union(copies.collect())?)
+}
+
+/// The union of all, in pairs, pairs of pairs and so on: every copy is handled a logarithm of
+/// their number of times.
+fn union(mut parts: Vec<Outline>) -> Result<Outline, GeometryError> {
+    while parts.len() > 1 {
+        let mut pairs = Vec::with_capacity(parts.len().div_ceil(2));
+        for pair in parts.chunks(2) {
+            pairs.push(match pair {
+                [a, b] => a.add(b)?,
+                rest => rest[0].clone(),
+            });
+        }
+        parts = pairs;
     }
-    Ok(all)
+    Ok(parts.pop().unwrap_or_default())
 }
 
 /// Mirror, then turn, then move.

@@ -18,7 +18,7 @@ pub struct Material {
     pub source: &'static str,
 }
 
-const VURGAFTMAN: &str = "mass: Vurgaftman, Meyer & Ram-Mohan, J. Appl. Phys. 89, 5815 (2001); g and permittivity quoted from memory";
+const VURGAFTMAN: &str = "mass: Vurgaftman, Meyer & Ram-Mohan, J. Appl. Phys. 89, 5815 (2001); all three quoted from memory";
 const REINERT: &str = "Reinert, Nicolay, Schmidt, Ehm & Hüfner, Phys. Rev. B 63, 115415 (2001), surface state measured by photoemission; quoted from memory";
 
 /// The built-in table, by name.

@@ -1,5 +1,8 @@
 //! The known word written most like an unknown one.
 
+/// Known words that are listed when none is near.
+const MOST_LISTED: usize = 24;
+
 /// The nearest of `known`, if it is near enough to be what was meant.
 pub(super) fn nearest<'a>(word: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
     // Only short words are compared: the distance costs the product of the lengths.
@@ -25,6 +28,9 @@ pub(super) fn remedy(word: &str, known: &[&str], none: &str) -> String {
     match nearest(word, known.iter().copied()) {
         Some(k) => format!("did you mean `{k}`?"),
         None if known.is_empty() => none.to_owned(),
+        None if known.len() > MOST_LISTED => {
+            format!("known here: {}, …", known[..MOST_LISTED].join(", "))
+        }
         None => format!("known here: {}", known.join(", ")),
     }
 }

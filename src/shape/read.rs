@@ -20,7 +20,7 @@ pub(super) const FINISH: [&str; 2] = ["round", "grow"];
 pub(super) const SOLVE: [&str; 4] = ["modes", "accuracy", "cell", "degree"];
 
 /// Tables that are announced but not made yet.
-const LATER: [(&str, &str); 7] = [
+pub(super) const LATER: [(&str, &str); 7] = [
     ("wall", "a finite wall"),
     ("landscape", "a potential landscape"),
     ("field", "a magnetic field"),

@@ -4,7 +4,7 @@ use super::bars;
 use super::system::System;
 use super::tail::Tail;
 use super::{SpectrumError, Timings};
-use crate::eigen::{self, Factor, Found, Problem, Settings, Window};
+use crate::eigen::{self, Found, Problem, Settings, Window};
 use crate::geometry::Outline;
 use crate::lattice::{CornerSpace, Lattice, Plan};
 use crate::operators::{self, Border, Functions, Pair, Residual, assemble, residual};
@@ -36,7 +36,7 @@ const STIFFEST: f64 = 30.0;
 /// Above this the quadrature of the corner functions is not to be trusted.
 pub const ASYMMETRY: f64 = 1e-8;
 /// Largest factor, bytes.
-const MEMORY: f64 = 12e9;
+const MEMORY: u64 = 12_000_000_000;
 /// Relative residual the eigensolver stops at; the level's error is of its square.
 const TOLERANCE: f64 = 1e-7;
 
@@ -79,15 +79,14 @@ impl Attempt {
             tail: system.tail,
         };
         let settings = Settings {
-            window,
             tolerance: TOLERANCE,
-            start: None,
             guess: Some(guess),
             memory: MEMORY,
+            ..Settings::new(window)
         };
         let found = eigen::solve(&problem, &settings, watch)?;
-        timings.factor += found.factor_ms;
-        timings.solve += found.solve_ms;
+        timings.factor += found.effort.plan_ms + found.effort.factor_ms;
+        timings.solve += found.effort.solve_ms;
         let clock = Instant::now();
         let functions = system.functions(&lattice, &tail, &found.vectors);
         let residual = residual(&lattice, &border.corners, &functions, &found.values);
@@ -121,16 +120,17 @@ fn prepare(
         pair.columns.clone(),
         pair.stiffness.clone(),
     );
-    let plan = eigen::Plan::new(&k, places, 0, MEMORY)?;
-    let mut factor = Factor::new(&plan, &k, None)?;
-    if factor.negative > 0 {
-        return Ok((false, Tail::default()));
-    }
-    let tail = Tail::new(pair, border, |b, count| {
-        factor.solve(b, count);
-        Ok(())
-    })?;
-    Ok((true, tail))
+    let tail = eigen::with_inverse(&k, places, MEMORY, |negative, solve| {
+        if negative > 0 {
+            return Ok((false, Tail::default()));
+        }
+        let tail = Tail::new(pair, border, |b, count| {
+            solve(b, count);
+            Ok(())
+        })?;
+        Ok::<_, eigen::EigenError>((true, tail))
+    })??;
+    Ok(tail)
 }
 
 fn ms(since: Instant) -> f64 {

@@ -151,7 +151,8 @@ fn finish(
     a: Attempt,
     timings: Timings,
 ) -> Spectrum {
-    let groups = bars::multiplicities(&a.bars, &a.found.beyond);
+    let beyond: Vec<f64> = a.found.beyond.iter().copied().chain(a.found.next).collect();
+    let groups = bars::multiplicities(&a.bars, &beyond);
     let levels: Vec<Level> = a
         .bars
         .iter()
@@ -180,7 +181,7 @@ fn finish(
             a.asymmetry
         ));
     }
-    if !a.found.complete {
+    if !a.found.count.complete {
         notes.push("the count of levels could not be certified".into());
     }
     let lattice = LatticeInfo {
@@ -192,10 +193,10 @@ fn finish(
         cut: a.lattice.regions.iter().map(|r| r.cuts.len()).sum(),
     };
     let certificate = Certificate {
-        shift: kinetic * a.found.shift,
-        below: a.found.below,
-        found: a.found.found,
-        complete: a.found.complete,
+        shift: kinetic * a.found.count.shift,
+        below: a.found.count.below,
+        found: a.found.count.found,
+        complete: a.found.count.complete,
     };
     Spectrum {
         levels,

@@ -23,6 +23,7 @@ pub struct System {
 
 impl System {
     /// Puts the blocks together.
+    #[allow(clippy::needless_range_loop)] // rows of several arrays in step
     pub fn new(pair: Pair, tail: &Tail, mut places: Vec<[f64; 2]>) -> Self {
         let (n, q) = (pair.len(), tail.len());
         let scale = diagonal_scale(&pair);
