@@ -174,8 +174,19 @@ pub fn done(job: Job) -> Vec<Action> {
     said.into_inner()
 }
 
-/// Figures that do not depend on the solver; the modes stay its own.
-pub fn with_fixed_figures(action: Action) -> Action {
+/// Figures that do not depend on the solver, and modes with a sign that does not: positive where
+/// they first rise, from the upper left. The rest of the modes stays the solver's own.
+pub fn with_fixed_figures(mut action: Action) -> Action {
+    if let Action::Taken { picture, .. } = &mut action {
+        let exposure = &mut picture.exposure;
+        let first = exposure
+            .values
+            .iter()
+            .find(|v| v.abs() > 0.25 * exposure.peak);
+        if first.is_some_and(|v| *v < 0.0) {
+            exposure.values.iter_mut().for_each(|v| *v = -*v);
+        }
+    }
     let Action::Solved { generation, result } = action else {
         return action;
     };
