@@ -70,11 +70,13 @@ fn plate(state: &State, buffer: &mut Buffer, layout: &Layout) {
     }
     let room = usize::from(layout.caption.width);
     let bar = Line::from(scale_bar(sight, state.document.scale.length(), room, &look));
-    let ramp = Line::from(legend((room / 3).clamp(6, 24), &look));
-    // where both do not fit, lengths matter more than shades
-    let fits = bar.width() + 2 + ramp.width() <= room;
+    let bar_width = bar.width();
     bar.render(layout.caption, buffer);
-    if fits && state.count() > 0 {
+    // the words at both ends of the legend, and a gap, take ten cells; below six the shades say
+    // little, and lengths matter more
+    let cells = room.saturating_sub(bar_width + 10).min(24);
+    if cells >= 6 && state.count() > 0 {
+        let ramp = Line::from(legend(cells.min(room / 3), &look));
         ramp.right_aligned().render(layout.caption, buffer);
     }
 }
