@@ -1,7 +1,7 @@
 //! From an outline to certified levels: chooses the lattice, assembles, solves, judges the error,
 //! and refines until the accuracy asked for is reached.
 //!
-//! Enters: an [`Outline`], the kinetic constant and what is wanted. Leaves: a [`Spectrum`].
+//! Enters: an [`Outline`](crate::geometry::Outline), the kinetic constant and what is wanted. Leaves: a [`Spectrum`].
 //! This room knows no files, no units of measure, no screens.
 
 mod attempt;
