@@ -92,19 +92,6 @@ pub fn solve(
         watch.step(round, ATTEMPTS, "lattices")?;
         let attempt = Attempt::new(outline, plan.clone(), window, top, &mut timings, watch)?;
         let step = next(&attempt, wanted.accuracy);
-        if std::env::var_os("DW_TRACE").is_some() {
-            eprintln!(
-                "round {round} h {:.4} n {} regions {} worst bar {:.1e} next {:?}",
-                plan.grid.h,
-                attempt.unknowns,
-                attempt.lattice.regions.len(),
-                attempt.bars.iter().map(|b| b.1 / b.0).fold(0.0, f64::max),
-                match &step {
-                    Next::Split(k) => format!("split {}", k.len()),
-                    o => format!("{o:?}"),
-                }
-            );
-        }
         let insisted = wanted.cell.is_some();
         if step == Next::Done || insisted || round + 1 == ATTEMPTS {
             return Ok(finish(outline, kinetic, wanted, attempt, timings));
@@ -148,10 +135,11 @@ fn finish(
     outline: &Outline,
     kinetic: f64,
     wanted: &Wanted,
-    a: Attempt,
+    mut a: Attempt,
     timings: Timings,
 ) -> Spectrum {
     let beyond: Vec<f64> = a.found.beyond.iter().copied().chain(a.found.next).collect();
+    sort(&mut a);
     let groups = bars::multiplicities(&a.bars, &beyond);
     let levels: Vec<Level> = a
         .bars
@@ -211,6 +199,27 @@ fn finish(
         timings,
         notes,
     }
+}
+
+/// Puts levels in order again: the correction by η² may swap neighbours within their bars.
+fn sort(a: &mut Attempt) {
+    let mut order: Vec<usize> = (0..a.bars.len()).collect();
+    order.sort_by(|&i, &j| a.bars[i].0.total_cmp(&a.bars[j].0));
+    if order.is_sorted() {
+        return;
+    }
+    let count = a.functions.count;
+    let columns = |v: &[f64]| -> Vec<f64> {
+        v.chunks_exact(count)
+            .flat_map(|row| order.iter().map(|&k| row[k]))
+            .collect()
+    };
+    for s in &mut a.functions.splines {
+        *s = columns(s);
+    }
+    a.functions.corners = columns(&a.functions.corners);
+    a.bars = order.iter().map(|&k| a.bars[k]).collect();
+    a.found.residuals = order.iter().map(|&k| a.found.residuals[k]).collect();
 }
 
 /// Area and perimeter by Gauss quadrature along the pieces.
