@@ -9,6 +9,7 @@ mod border;
 mod cell;
 mod glue;
 mod residual;
+mod rows;
 mod tables;
 mod wall;
 

@@ -4,6 +4,7 @@
 //! An eigenvalue's error is proportional to it (Babuška & Osborn 1991); the constant is
 //! calibrated on outlines with known levels, see `spectrum::bars`.
 
+use super::rows::axpy;
 use super::tables::Tables;
 use super::wall::{Traces, beta, points, points_needed};
 use crate::geometry::{Point, pt};
@@ -258,13 +259,6 @@ impl Work {
                 *o += scale * w * r * r;
             }
         }
-    }
-}
-
-#[inline(always)]
-fn axpy(to: &mut [f64], a: f64, x: &[f64]) {
-    for (t, x) in to.iter_mut().zip(x) {
-        *t += a * x;
     }
 }
 
