@@ -31,7 +31,7 @@ pub fn solve(opened: &Opened) -> Result<Spectrum, Stop> {
         handle
     });
     let kinetic = opened.document.kinetic();
-    let solved = spectrum::solve(&opened.outline, kinetic, &opened.wanted, None, &watch);
+    let solved = spectrum::solve(&opened.outline, kinetic, &opened.wanted, &watch);
     drop::<std::sync::mpsc::Sender<()>>(running);
     if let Some(handle) = handle {
         handle.close();

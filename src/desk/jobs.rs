@@ -79,8 +79,6 @@ pub enum Job {
         generation: u64,
         /// Of what.
         document: Arc<Document>,
-        /// Levels of a similar outline.
-        warm: Option<Arc<Spectrum>>,
     },
     /// Sample modes for pictures, and measure them.
     Take {

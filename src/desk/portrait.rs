@@ -108,7 +108,7 @@ mod tests {
             ..Wanted::default()
         };
         let outline = Outline::polygon(&corners).expect("a rectangle");
-        let found = solve(&outline, 1.0, &wanted, None, &Watch::quiet()).expect("a rectangle");
+        let found = solve(&outline, 1.0, &wanted, &Watch::quiet()).expect("a rectangle");
         // the levels are ordered (1,1), (2,1), (1,2)
         let p = portrait(&found.modes, 1, &[corners.to_vec()]).expect("there is a mode");
         let pi2 = std::f64::consts::PI.powi(2);

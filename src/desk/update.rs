@@ -93,7 +93,6 @@ fn solve(state: &mut State) -> Job {
     Job::Solve {
         generation: state.solving.generation,
         document: state.document.clone(),
-        warm: state.solving.spectrum.clone(),
     }
 }
 

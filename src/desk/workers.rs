@@ -115,9 +115,8 @@ pub fn perform(job: Job, watch: &Watch, say: &dyn Fn(Action)) {
         Job::Solve {
             generation,
             document: d,
-            warm,
         } => {
-            let found = solve(&d.outline, d.kinetic, &d.wanted, warm.as_deref(), watch);
+            let found = solve(&d.outline, d.kinetic, &d.wanted, watch);
             let result = match found {
                 Ok(spectrum) => Ok(Box::new(spectrum)),
                 Err(SpectrumError::Cancelled(_)) => return,

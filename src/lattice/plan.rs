@@ -135,8 +135,7 @@ fn cells_per_radius(bend: f64, accuracy: f64) -> f64 {
 /// 0.015 δ²ℓ² (∂ₙu)², and (∂ₙu)² is λ/A on average (Rellich 1940); polygons of N chords on a circle
 /// give 0.015 against the exact 4ζ(3)/N³.
 fn worthwhile(outline: &Outline, demand: &Demand, h: f64) -> Vec<(Corner, [u32; 2])> {
-    let size = outline.bounds().size();
-    let area = size.x * size.y;
+    let area = outline.area();
     let lengths = chords(outline);
     let mut all: Vec<(f64, (Corner, [u32; 2]))> = singular_corners(outline)
         .into_iter()

@@ -194,7 +194,7 @@ mod example {
             count: 4,
             ..Wanted::default()
         };
-        let solved = solve(&outline, 1.0, &wanted, None, &Watch::quiet());
+        let solved = solve(&outline, 1.0, &wanted, &Watch::quiet());
         solved.expect("a box can be solved").modes
     }
 }

@@ -56,7 +56,7 @@ mod example {
             count,
             ..Wanted::default()
         };
-        let mut s = solve(&square, 568.65, &wanted, None, &Watch::quiet()).expect("a square");
+        let mut s = solve(&square, 568.65, &wanted, &Watch::quiet()).expect("a square");
         s.notes = vec!["drawn by hand".into()];
         s
     }

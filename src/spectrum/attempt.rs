@@ -64,8 +64,14 @@ impl Attempt {
             let coercive;
             (coercive, tail) = prepare(&pair, &border, &places)?;
             timings.factor += ms(clock);
-            if coercive || lattice.stiffening > STIFFEST {
+            if coercive {
                 break;
+            }
+            if lattice.stiffening > STIFFEST {
+                return Err(SpectrumError::Numerical(
+                    "the wall could not be held on this lattice; a smaller [solve] cell would help"
+                        .into(),
+                ));
             }
             lattice.stiffening *= 2.0;
         }

@@ -14,4 +14,4 @@ mod tail;
 pub mod weyl;
 
 pub use level::{Certificate, LatticeInfo, Level, Spectrum, Timings, Wanted};
-pub use solve::{SpectrumError, draft, solve};
+pub use solve::{SpectrumError, solve};

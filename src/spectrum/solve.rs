@@ -48,7 +48,6 @@ const ATTEMPTS: usize = 8;
 const MOST_UNKNOWNS: f64 = 1.2e6;
 
 /// The levels of `outline`; `kinetic` is ħ²/2m in energy × length², 1 for reduced shapes.
-/// `warm`: a spectrum of a similar outline, whose modes speed up the solve.
 ///
 /// # Errors
 /// See [`SpectrumError`].
@@ -56,11 +55,9 @@ pub fn solve(
     outline: &Outline,
     kinetic: f64,
     wanted: &Wanted,
-    warm: Option<&Spectrum>,
     watch: &Watch,
 ) -> Result<Spectrum, SpectrumError> {
-    let _ = warm;
-    let (area, perimeter) = measures(outline);
+    let (area, perimeter) = (outline.area(), outline.perimeter());
     let from = wanted.from.map(|e| e / kinetic);
     let below = from.map_or(0.0, |l| weyl::count(area, perimeter, l));
     let top = weyl::level(area, perimeter, below + wanted.count as f64 + 1.5);
@@ -116,21 +113,6 @@ pub fn solve(
     ))
 }
 
-/// Quick levels after a small edit, from the modes of the outline before it (relative error about
-/// 1e-5, no certificate).
-///
-/// # Errors
-/// See [`SpectrumError`].
-pub fn draft(
-    outline: &Outline,
-    kinetic: f64,
-    wanted: &Wanted,
-    before: &Spectrum,
-    watch: &Watch,
-) -> Result<Spectrum, SpectrumError> {
-    solve(outline, kinetic, wanted, Some(before), watch)
-}
-
 fn finish(
     outline: &Outline,
     kinetic: f64,
@@ -141,6 +123,21 @@ fn finish(
     let beyond: Vec<f64> = a.found.beyond.iter().copied().chain(a.found.next).collect();
     sort(&mut a);
     let groups = bars::multiplicities(&a.bars, &beyond);
+    let lattice = LatticeInfo {
+        cell: a.lattice.trace.grid.h,
+        finest: a.lattice.finest(),
+        degree: a.lattice.degree,
+        unknowns: a.unknowns,
+        inside: a.lattice.regions.iter().map(|r| r.inside.len()).sum(),
+        cut: a.lattice.regions.iter().map(|r| r.cuts.len()).sum(),
+    };
+    let mut modes = Modes::new(
+        outline.clone(),
+        Arc::new(a.lattice),
+        Arc::new(a.corners),
+        a.functions,
+    );
+    let labels = modes.settle(&groups);
     let levels: Vec<Level> = a
         .bars
         .iter()
@@ -151,7 +148,7 @@ fn finish(
             error: kinetic * b.1,
             multiplicity: groups[k],
             residual: a.found.residuals[k],
-            label: None,
+            label: labels[k].clone(),
         })
         .collect();
     let mut notes = Vec::new();
@@ -172,14 +169,6 @@ fn finish(
     if !a.found.count.complete {
         notes.push("the count of levels could not be certified".into());
     }
-    let lattice = LatticeInfo {
-        cell: a.lattice.trace.grid.h,
-        finest: a.lattice.finest(),
-        degree: a.lattice.degree,
-        unknowns: a.unknowns,
-        inside: a.lattice.regions.iter().map(|r| r.inside.len()).sum(),
-        cut: a.lattice.regions.iter().map(|r| r.cuts.len()).sum(),
-    };
     let certificate = Certificate {
         shift: kinetic * a.found.count.shift,
         below: a.found.count.below,
@@ -188,12 +177,7 @@ fn finish(
     };
     Spectrum {
         levels,
-        modes: Modes::new(
-            outline.clone(),
-            Arc::new(a.lattice),
-            Arc::new(a.corners),
-            a.functions,
-        ),
+        modes,
         lattice,
         certificate,
         timings,
@@ -220,19 +204,4 @@ fn sort(a: &mut Attempt) {
     a.functions.corners = columns(&a.functions.corners);
     a.bars = order.iter().map(|&k| a.bars[k]).collect();
     a.found.residuals = order.iter().map(|&k| a.found.residuals[k]).collect();
-}
-
-/// Area and perimeter by Gauss quadrature along the pieces.
-fn measures(outline: &Outline) -> (f64, f64) {
-    let rule = crate::lattice::gauss::rule(24);
-    let (mut area, mut perimeter) = (0.0, 0.0);
-    for p in outline.pieces() {
-        for (x, w) in rule.x.iter().zip(&rule.w) {
-            let t = 0.5 * (1.0 + x);
-            let v = p.velocity(t);
-            area += 0.25 * w * p.at(t).cross(v);
-            perimeter += 0.5 * w * v.norm();
-        }
-    }
-    (area, perimeter)
 }

@@ -355,7 +355,7 @@ fn the_key_table_names_every_key() {
 fn a_map_in_characters_for_a_run_without_terminal() {
     let d = document(rectangle(80., 50.));
     let watch = Watch::quiet();
-    let found = solve(&d.outline, d.kinetic, &d.wanted, None, &watch);
+    let found = solve(&d.outline, d.kinetic, &d.wanted, &watch);
     let found = found.expect("a rectangle has levels");
     let map = dotwright::desk::print_map(&d, &found, 1, Glyphs::Plain, (40, 14));
     assert!(map.is_ascii());
