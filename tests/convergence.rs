@@ -3,7 +3,7 @@ mod common;
 use common::column;
 use dotwright::geometry::{Outline, pt};
 use dotwright::progress::Watch;
-use dotwright::spectrum::{Wanted, bars, solve};
+use dotwright::spectrum::{Model, Wanted, bars, solve};
 
 /// The lowest 20 levels on four lattices; the computed value itself, without the correction by η²,
 /// which would hide the order. A level's error falls like h^2p.
@@ -25,7 +25,8 @@ fn orders_are_twice_the_degree() {
                 degree: Some(degree),
                 ..Wanted::default()
             };
-            let s = solve(&disc, 1.0, &wanted, &Watch::quiet()).expect("levels");
+            let s =
+                solve(&Model::hard(disc.clone(), 1.0), &wanted, &Watch::quiet()).expect("levels");
             let raw = s.levels.iter().map(|l| {
                 let eta2 = (l.error - bars::FLOOR * l.energy).max(0.0) / bars::SPREAD;
                 l.energy + bars::SHIFT * eta2

@@ -4,14 +4,14 @@ use common::{Stream, placed};
 use dotwright::geometry::{Outline, Piece, Point, Similarity, pt};
 use dotwright::lattice::gauss;
 use dotwright::progress::Watch;
-use dotwright::spectrum::{Spectrum, Wanted, solve, weyl};
+use dotwright::spectrum::{Model, Spectrum, Wanted, solve, weyl};
 
 fn levels(o: &Outline, count: usize) -> Spectrum {
     let wanted = Wanted {
         count,
         ..Wanted::default()
     };
-    solve(o, 1.0, &wanted, &Watch::quiet()).expect("levels")
+    solve(&Model::hard(o.clone(), 1.0), &wanted, &Watch::quiet()).expect("levels")
 }
 
 fn lens() -> Outline {

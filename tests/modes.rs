@@ -2,14 +2,14 @@
 mod common;
 use dotwright::geometry::{Outline, Similarity, pt};
 use dotwright::progress::Watch;
-use dotwright::spectrum::{Spectrum, Wanted, solve};
+use dotwright::spectrum::{Model, Spectrum, Wanted, solve};
 
 fn levels(o: &Outline, count: usize) -> Spectrum {
     let wanted = Wanted {
         count,
         ..Wanted::default()
     };
-    solve(o, 1.0, &wanted, &Watch::quiet()).expect("levels")
+    solve(&Model::hard(o.clone(), 1.0), &wanted, &Watch::quiet()).expect("levels")
 }
 
 fn labels(s: &Spectrum) -> Vec<&str> {
@@ -75,7 +75,7 @@ fn signs_and_bases_do_not_depend_on_the_lattice() {
         cell: Some(0.05),
         ..Wanted::default()
     };
-    let fine = solve(&o, 1.0, &wanted, &Watch::quiet()).expect("levels");
+    let fine = solve(&Model::hard(o.clone(), 1.0), &wanted, &Watch::quiet()).expect("levels");
     for k in 0..4 {
         for p in [pt(0.21, 0.34), pt(0.68, 0.27), pt(0.43, 0.81)] {
             let (a, b) = (coarse.modes.value(k, p), fine.modes.value(k, p));

@@ -1,7 +1,7 @@
 //! Every document of `shapes/` is solved, certified, and within the accuracy it asks for.
 use dotwright::progress::Watch;
 use dotwright::shape::Document;
-use dotwright::spectrum::{Wanted, solve};
+use dotwright::spectrum::{Model, Wanted, solve};
 
 #[test]
 fn every_shape_is_solved() {
@@ -14,22 +14,15 @@ fn every_shape_is_solved() {
         }
         let name = path.display().to_string();
         let document = Document::read(&path).expect("a sound document");
-        let shape = document.outline().expect("a sound outline");
-        let asked = document.solve();
-        let wanted = Wanted {
-            count: asked.modes,
-            accuracy: asked.accuracy,
-            cell: asked.cell,
-            degree: asked.degree,
-            ..Wanted::default()
-        };
-        let s = solve(&shape.outline, document.kinetic(), &wanted, &Watch::quiet()).expect(&name);
+        let (model, _) = Model::of(&document).expect("a sound outline");
+        let wanted = Wanted::of(&document);
+        let s = solve(&model, &wanted, &Watch::quiet()).expect(&name);
         assert!(s.certificate.complete, "{name}");
-        assert_eq!(s.levels.len(), asked.modes, "{name}");
+        assert_eq!(s.levels.len(), wanted.count, "{name}");
         assert!(s.notes.is_empty(), "{name}: {:?}", s.notes);
         for l in &s.levels {
             assert!(
-                l.error <= asked.accuracy * l.energy,
+                l.error <= wanted.accuracy * l.energy,
                 "{name}, level {}",
                 l.index
             );

@@ -4,7 +4,7 @@ mod common;
 use common::*;
 use dotwright::geometry::{Loop, Outline, Piece, pt};
 use dotwright::progress::Watch;
-use dotwright::spectrum::{Wanted, solve};
+use dotwright::spectrum::{Model, Wanted, solve};
 use std::f64::consts::{PI, TAU};
 
 const L: [(f64, f64); 6] = [
@@ -146,8 +146,7 @@ fn tables() {
         for _ in 0..reps {
             let o = make(rng.within(0.0, TAU), (rng.next(), rng.next()));
             let s = solve(
-                &o,
-                1.0,
+                &Model::hard(o.clone(), 1.0),
                 &Wanted {
                     count: n,
                     ..Wanted::default()
@@ -222,8 +221,7 @@ fn features() {
         for a in [acc, 1e-8] {
             let clock = std::time::Instant::now();
             let s = solve(
-                &o,
-                1.0,
+                &Model::hard(o.clone(), 1.0),
                 &Wanted {
                     count: 20,
                     accuracy: a,
@@ -330,8 +328,7 @@ fn hard_features_agree_between_settings() {
                 ..Wanted::default()
             };
             let s = solve(
-                &placed(&v, angle, (0.1, 0.2)),
-                1.0,
+                &Model::hard(placed(&v, angle, (0.1, 0.2)), 1.0),
                 &wanted,
                 &Watch::quiet(),
             )

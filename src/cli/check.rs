@@ -26,11 +26,11 @@ pub fn check(asked: &Check) -> Result<(), Stop> {
     };
     let mut page = Page::new(
         opened.document.units().length,
-        opened.outline.bounds().diagonal(),
+        opened.model.outline.bounds().diagonal(),
     );
-    page.text += &format!("{}\n{}\n\n", opened.document.title(), opened.model);
+    page.text += &format!("{}\n{}\n\n", opened.document.title(), opened.about);
     sizes(&mut page, &opened);
-    outline(&mut page, &opened.outline);
+    outline(&mut page, &opened.model.outline);
     count(&mut page, &opened, below);
     page.text.push('\n');
     for remark in &opened.notes {
@@ -218,7 +218,10 @@ fn corners(page: &mut Page, corners: &[Corner]) {
 
 /// How many levels to expect (Weyl's two-term law).
 fn count(page: &mut Page, opened: &Opened, below: Option<f64>) {
-    let (area, perimeter) = (opened.outline.area(), opened.outline.perimeter());
+    let (area, perimeter) = (
+        opened.model.outline.area(),
+        opened.model.outline.perimeter(),
+    );
     let kinetic = opened.document.kinetic();
     let energy =
         below.unwrap_or_else(|| kinetic * weyl::level(area, perimeter, opened.wanted.count as f64));

@@ -42,7 +42,7 @@ pub fn account<'a>(opened: &'a Opened, spectrum: &'a Spectrum) -> Account<'a> {
     let units = opened.document.units();
     Account {
         title: opened.document.title(),
-        model: &opened.model,
+        model: &opened.about,
         energy: units.energy,
         length: units.length,
         spectrum,

@@ -2,10 +2,9 @@
 
 use super::options::{Accuracy, Asked, Sizes};
 use super::stop::Stop;
-use crate::geometry::Outline;
 use crate::pictures;
 use crate::shape::{self, Document, Host, Scale};
-use crate::spectrum::Wanted;
+use crate::spectrum::{Model, Wanted};
 use crate::units::{Dimension, Quantity};
 use std::io::Read;
 use std::path::Path;
@@ -14,12 +13,12 @@ use std::path::Path;
 pub struct Opened {
     /// The document, with the changes of the command line.
     pub document: Document,
-    /// Its outline.
-    pub outline: Outline,
+    /// What is solved.
+    pub model: Model,
     /// Remarks on the outline.
     pub notes: Vec<String>,
     /// What was modelled, in a few words.
-    pub model: String,
+    pub about: String,
     /// What the document asks of the solver.
     pub wanted: Wanted,
 }
@@ -44,19 +43,12 @@ impl Opened {
                 .collect();
             document = document.set_all(&changes)?;
         }
-        let made = document.outline()?;
-        let asked = document.solve();
+        let (model, notes) = Model::of(&document)?;
         Ok(Self {
-            model: model(document.host()),
-            outline: made.outline,
-            notes: made.notes,
-            wanted: Wanted {
-                count: asked.modes,
-                from: None,
-                accuracy: asked.accuracy,
-                cell: asked.cell,
-                degree: asked.degree,
-            },
+            about: about(document.host()),
+            model,
+            notes,
+            wanted: Wanted::of(&document),
             document,
         })
     }
@@ -111,7 +103,7 @@ impl Opened {
                 energy: units.energy.to_owned(),
                 length: units.length.to_owned(),
             },
-            model: self.model.clone(),
+            model: self.about.clone(),
         }
     }
 }
@@ -131,7 +123,7 @@ fn from_standard_input() -> Result<Document, Stop> {
 }
 
 /// `one electron, hard wall, GaAs (m = 0.067 mₑ)`.
-fn model(host: Option<&Host>) -> String {
+fn about(host: Option<&Host>) -> String {
     match host {
         None => "one particle, hard wall, −Δψ = Eψ".to_owned(),
         Some(Host {

@@ -30,8 +30,7 @@ pub fn solve(opened: &Opened) -> Result<Spectrum, Stop> {
         std::thread::spawn(move || stand_by(signals, &watch, &caught, &ended));
         handle
     });
-    let kinetic = opened.document.kinetic();
-    let solved = spectrum::solve(&opened.outline, kinetic, &opened.wanted, &watch);
+    let solved = spectrum::solve(&opened.model, &opened.wanted, &watch);
     drop::<std::sync::mpsc::Sender<()>>(running);
     if let Some(handle) = handle {
         handle.close();

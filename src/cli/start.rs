@@ -49,10 +49,9 @@ fn on_the_desk(opened: &Opened, path: Option<&Path>) -> desk::Document {
     let stem = path.and_then(Path::file_stem).filter(|s| *s != "-");
     desk::Document {
         title: opened.document.title().to_owned(),
-        model: opened.model.clone(),
+        about: opened.about.clone(),
         stem: stem.map_or("two-lobe".into(), |s| s.to_string_lossy().into_owned()),
-        outline: opened.outline.clone(),
-        kinetic: opened.document.kinetic(),
+        model: opened.model.clone(),
         wanted: opened.wanted.clone(),
         scale: match opened.document.scale() {
             Scale::Lab => desk::Scale::Lab,

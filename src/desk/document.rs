@@ -1,7 +1,6 @@
 //! What the desk lies open on: an outline, and what is wanted of it.
 
-use crate::geometry::Outline;
-use crate::spectrum::Wanted;
+use crate::spectrum::{Model, Wanted};
 
 /// Units on screen.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -36,13 +35,11 @@ pub struct Document {
     /// Title, for people.
     pub title: String,
     /// What is modelled, in a few words, for captions.
-    pub model: String,
+    pub about: String,
     /// What exported files are named after.
     pub stem: String,
-    /// The outline, in nm or in pure numbers.
-    pub outline: Outline,
-    /// ħ²/2m in meV nm²; 1 for reduced shapes.
-    pub kinetic: f64,
+    /// What is solved, in nm and meV or in pure numbers.
+    pub model: Model,
     /// How many levels, how exact.
     pub wanted: Wanted,
     /// Units on screen.

@@ -61,7 +61,7 @@ pub fn write_map(
     let caption = pictures::Caption {
         title: document.title.clone(),
         units,
-        model: document.model.clone(),
+        model: document.about.clone(),
     };
     let picture = pictures::map(&spectrum.modes, mode, level, &caption, &look);
     let path = free_name(folder, &document.stem, level.index, show.name());

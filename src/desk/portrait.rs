@@ -90,7 +90,7 @@ mod tests {
     use super::*;
     use crate::geometry::Outline;
     use crate::progress::Watch;
-    use crate::spectrum::{Wanted, solve};
+    use crate::spectrum::{Model, Wanted, solve};
 
     #[test]
     fn a_box_mode_has_its_closed_figures() {
@@ -108,7 +108,8 @@ mod tests {
             ..Wanted::default()
         };
         let outline = Outline::polygon(&corners).expect("a rectangle");
-        let found = solve(&outline, 1.0, &wanted, &Watch::quiet()).expect("a rectangle");
+        let found = solve(&Model::hard(outline.clone(), 1.0), &wanted, &Watch::quiet())
+            .expect("a rectangle");
         // the levels are ordered (1,1), (2,1), (1,2)
         let p = portrait(&found.modes, 1, &[corners.to_vec()]).expect("there is a mode");
         let pi2 = std::f64::consts::PI.powi(2);

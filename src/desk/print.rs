@@ -21,11 +21,11 @@ pub fn print_map(
     glyphs: Glyphs,
     cells: (u16, u16),
 ) -> String {
-    let lines = flatten(&document.outline);
+    let lines = flatten(&document.model.outline);
     let (columns, rows) = (cells.0.clamp(4, 500), cells.1.clamp(4, 300));
     let plate = Rect::new(0, 0, columns, rows - 2);
     let size = (usize::from(plate.width), usize::from(plate.height));
-    let bounds = document.outline.bounds();
+    let bounds = document.model.outline.bounds();
     let Some(mount) = Mount::new(&lines, bounds, size, 2.0) else {
         return String::new();
     };

@@ -187,10 +187,10 @@ pub struct State {
 impl State {
     /// A desk with a shape on it and nothing solved yet.
     pub fn new(document: Document, capability: Capability, folder: PathBuf) -> Self {
-        let bounds = document.outline.bounds();
-        let lines = super::plate::flatten(&document.outline);
+        let bounds = document.model.outline.bounds();
+        let lines = super::plate::flatten(&document.model.outline);
         Self {
-            area: document.outline.area(),
+            area: document.model.outline.area(),
             lines: Arc::new(lines),
             bounds,
             document: Arc::new(document),

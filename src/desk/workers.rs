@@ -116,7 +116,7 @@ pub fn perform(job: Job, watch: &Watch, say: &dyn Fn(Action)) {
             generation,
             document: d,
         } => {
-            let found = solve(&d.outline, d.kinetic, &d.wanted, watch);
+            let found = solve(&d.model, &d.wanted, watch);
             let result = match found {
                 Ok(spectrum) => Ok(Box::new(spectrum)),
                 Err(SpectrumError::Cancelled(_)) => return,

@@ -182,7 +182,7 @@ mod example {
     use crate::geometry::{Outline, Point};
     use crate::modes::Modes;
     use crate::progress::Watch;
-    use crate::spectrum::{Wanted, solve};
+    use crate::spectrum::{Model, Wanted, solve};
 
     /// The lowest four modes of a box 3 by 2 with a corner at (1, 1): by half waves along x and y
     /// they are 11, 21, 12, 31.
@@ -194,7 +194,7 @@ mod example {
             count: 4,
             ..Wanted::default()
         };
-        let solved = solve(&outline, 1.0, &wanted, &Watch::quiet());
+        let solved = solve(&Model::hard(outline.clone(), 1.0), &wanted, &Watch::quiet());
         solved.expect("a box can be solved").modes
     }
 }

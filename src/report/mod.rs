@@ -46,7 +46,7 @@ mod example {
     //! A spectrum with a degenerate pair, for the tests of this room.
     use crate::geometry::{Outline, Point};
     use crate::progress::Watch;
-    use crate::spectrum::{Spectrum, Wanted, solve};
+    use crate::spectrum::{Model, Spectrum, Wanted, solve};
 
     pub fn spectrum(count: usize) -> Spectrum {
         let p = |x, y| Point { x, y };
@@ -56,7 +56,8 @@ mod example {
             count,
             ..Wanted::default()
         };
-        let mut s = solve(&square, 568.65, &wanted, &Watch::quiet()).expect("a square");
+        let mut s =
+            solve(&Model::hard(square, 568.65), &wanted, &Watch::quiet()).expect("a square");
         s.notes = vec!["drawn by hand".into()];
         s
     }

@@ -1,6 +1,7 @@
 //! What is asked of a solve, and what comes back.
 
 use crate::modes::Modes;
+use crate::shape::Document;
 
 /// What is wanted of a spectrum.
 #[derive(Clone, Debug, PartialEq)]
@@ -25,6 +26,20 @@ impl Default for Wanted {
             accuracy: 1e-6,
             cell: None,
             degree: None,
+        }
+    }
+}
+
+impl Wanted {
+    /// What a shape document asks for.
+    pub fn of(document: &Document) -> Self {
+        let asked = document.solve();
+        Self {
+            count: asked.modes,
+            from: None,
+            accuracy: asked.accuracy,
+            cell: asked.cell,
+            degree: asked.degree,
         }
     }
 }

@@ -2,6 +2,7 @@
 
 use super::attempt::{ASYMMETRY, Attempt};
 use super::level::{Certificate, LatticeInfo, Level, Spectrum, Timings, Wanted};
+use super::model::Model;
 use super::refine::{Next, next};
 use super::{bars, weyl};
 use crate::eigen::{EigenError, Window};
@@ -47,16 +48,38 @@ const ATTEMPTS: usize = 8;
 /// Most unknowns of one problem; p = 5 needs about 10 kB each.
 const MOST_UNKNOWNS: f64 = 1.2e6;
 
-/// The levels of `outline`; `kinetic` is ħ²/2m in energy × length², 1 for reduced shapes.
+/// Accuracy of a draft.
+const DRAFT: f64 = 1e-4;
+
+/// The levels of a model, as exact as asked for.
 ///
 /// # Errors
 /// See [`SpectrumError`].
-pub fn solve(
-    outline: &Outline,
-    kinetic: f64,
+pub fn solve(model: &Model, wanted: &Wanted, watch: &Watch) -> Result<Spectrum, SpectrumError> {
+    refined(model, wanted, ATTEMPTS, watch)
+}
+
+/// Levels while an edit is under way: one coarse lattice, whatever error bars it gives.
+///
+/// # Errors
+/// See [`SpectrumError`].
+pub fn draft(model: &Model, wanted: &Wanted, watch: &Watch) -> Result<Spectrum, SpectrumError> {
+    let rough = Wanted {
+        accuracy: wanted.accuracy.max(DRAFT),
+        cell: None,
+        degree: None,
+        ..wanted.clone()
+    };
+    refined(model, &rough, 1, watch)
+}
+
+fn refined(
+    model: &Model,
     wanted: &Wanted,
+    attempts: usize,
     watch: &Watch,
 ) -> Result<Spectrum, SpectrumError> {
+    let (outline, kinetic) = (&model.outline, model.kinetic);
     let (area, perimeter) = (outline.area(), outline.perimeter());
     let from = wanted.from.map(|e| e / kinetic);
     let below = from.map_or(0.0, |l| weyl::count(area, perimeter, l));
@@ -78,7 +101,7 @@ pub fn solve(
     let mut timings = Timings::default();
     let mut plan = Plan::new(outline, &demand);
     let mut extra = Vec::new();
-    for round in 0..ATTEMPTS {
+    for round in 0..attempts {
         let cells = area / plan.grid.h.powi(2) + perimeter / plan.grid.h;
         if cells > MOST_UNKNOWNS {
             return Err(SpectrumError::TooMuch(format!(
@@ -86,11 +109,11 @@ pub fn solve(
                  a larger cell"
             )));
         }
-        watch.step(round, ATTEMPTS, "lattices")?;
+        watch.step(round, attempts, "lattices")?;
         let attempt = Attempt::new(outline, plan.clone(), window, top, &mut timings, watch)?;
         let step = next(&attempt, wanted.accuracy);
         let insisted = wanted.cell.is_some();
-        if step == Next::Done || insisted || round + 1 == ATTEMPTS {
+        if step == Next::Done || insisted || round + 1 == attempts {
             return Ok(finish(outline, kinetic, wanted, attempt, timings));
         }
         match step {

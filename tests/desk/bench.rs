@@ -6,7 +6,7 @@ use dotwright::desk::{
 };
 use dotwright::geometry::{Outline, Point};
 use dotwright::progress::Watch;
-use dotwright::spectrum::{Level, Spectrum, Wanted};
+use dotwright::spectrum::{Level, Model, Spectrum, Wanted};
 use ratatui::Terminal;
 use ratatui::backend::TestBackend;
 use std::cell::RefCell;
@@ -21,10 +21,9 @@ pub fn rectangle(width: f64, height: f64) -> Outline {
 pub fn document(outline: Outline) -> Document {
     Document {
         title: "Slab dot, variant 3".into(),
-        model: "one electron, hard wall".into(),
+        about: "one electron, hard wall".into(),
         stem: "slab-dot".into(),
-        outline,
-        kinetic: 38.099_821_2 / 0.067,
+        model: Model::hard(outline, 38.099_821_2 / 0.067),
         wanted: Wanted {
             count: 12,
             ..Wanted::default()
@@ -153,7 +152,7 @@ pub fn done(job: Job) -> Vec<Action> {
     {
         let hit = known()
             .iter()
-            .find(|s| s.0 == d.outline)
+            .find(|s| s.0 == d.model.outline)
             .map(|s| s.1.clone());
         if let Some(spectrum) = hit {
             return vec![Action::Solved {
@@ -161,7 +160,7 @@ pub fn done(job: Job) -> Vec<Action> {
                 result: Ok(Box::new(spectrum)),
             }];
         }
-        let outline = d.outline.clone();
+        let outline = d.model.outline.clone();
         perform(job, &Watch::quiet(), &|a| {
             if let Action::Solved { result: Ok(s), .. } = &a {
                 known().push((outline.clone(), (**s).clone()));

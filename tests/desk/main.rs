@@ -283,7 +283,7 @@ fn degenerate_levels_and_open_counts_are_shown() {
 fn shapes_without_units_have_no_kelvin() {
     let mut d = document(rectangle(1.0, 2.0));
     d.scale = Scale::Reduced;
-    d.kinetic = 1.0;
+    d.model.kinetic = 1.0;
     let mut desk = Desk::new(d, MONO, (80, 24));
     desk.act(Action::Begin);
     let screen = desk.screen();
@@ -355,7 +355,7 @@ fn the_key_table_names_every_key() {
 fn a_map_in_characters_for_a_run_without_terminal() {
     let d = document(rectangle(80., 50.));
     let watch = Watch::quiet();
-    let found = solve(&d.outline, d.kinetic, &d.wanted, &watch);
+    let found = solve(&d.model, &d.wanted, &watch);
     let found = found.expect("a rectangle has levels");
     let map = dotwright::desk::print_map(&d, &found, 1, Glyphs::Plain, (40, 14));
     assert!(map.is_ascii());
