@@ -2,7 +2,8 @@
 
 use super::band::Band;
 use super::cell::{Element, Kernel};
-use super::glue::glue;
+use super::cross::Cross;
+
 use super::tables::Tables;
 use super::wall::{Traces, add_wall, beta, symmetrise};
 use crate::lattice::{Lattice, Role, Space};
@@ -43,8 +44,8 @@ pub fn assemble(lattice: &Lattice, watch: &Watch) -> Result<Pair, Cancelled> {
         watch.step(n, lattice.regions.len(), "regions")?;
         bands.push(fill(lattice, n, &t));
     }
-    let cross = faces(lattice, &mut bands);
-    Ok(condense(lattice, &bands, cross))
+    let cross = Cross::new(lattice, &mut bands);
+    Ok(condense(lattice, &bands, &cross))
 }
 
 /// Stiffness and mass bands of one region, walls included.
@@ -83,48 +84,6 @@ fn fill(lattice: &Lattice, n: usize, t: &Tables) -> [Band; 2] {
         mass.add(c.i, c.j, &element.mass);
     }
     [stiff, mass]
-}
-
-/// Glue terms: same-side blocks into the bands, cross blocks as entries (row, column, value),
-/// both triangles.
-fn faces(lattice: &Lattice, bands: &mut [[Band; 2]]) -> Vec<(u32, u32, f64)> {
-    let m = lattice.degree + 1;
-    let mut traces = [Traces::new(lattice.degree), Traces::new(lattice.degree)];
-    let mut out = Vec::new();
-    for face in &lattice.faces {
-        let g = glue(lattice, face, &mut traces);
-        let [f, c] = g.regions;
-        bands[f][0].add(g.cells[0][0], g.cells[0][1], &g.blocks[0]);
-        bands[c][0].add(g.cells[1][0], g.cells[1][1], &g.blocks[2]);
-        let terms = |s: usize| -> Vec<Vec<(u32, f64)>> {
-            let space = &lattice.spaces[g.regions[s]];
-            let first = space.first_spline(g.cells[s][0], g.cells[s][1]);
-            (0..m * m)
-                .map(|k| expand(space, first + (k / m) * space.size[1] + k % m))
-                .collect()
-        };
-        let (fine, coarse) = (terms(0), terms(1));
-        for (i, rows) in fine.iter().enumerate() {
-            for (j, cols) in coarse.iter().enumerate() {
-                let v = g.blocks[1][i * m * m + j];
-                for &(r, x) in rows {
-                    for &(c, y) in cols {
-                        out.push((r, c, v * x * y));
-                        out.push((c, r, v * x * y));
-                    }
-                }
-            }
-        }
-    }
-    out.sort_unstable_by_key(|e| (e.0, e.1));
-    out.dedup_by(|b, a| {
-        let same = a.0 == b.0 && a.1 == b.1;
-        if same {
-            a.2 += b.2;
-        }
-        same
-    });
-    out
 }
 
 /// A spline as a combination of unknowns.
@@ -178,8 +137,8 @@ impl Row {
     }
 }
 
-/// EᵀKE and EᵀME, region by region, with the glue's cross entries merged in.
-fn condense(lattice: &Lattice, bands: &[[Band; 2]], cross: Vec<(u32, u32, f64)>) -> Pair {
+/// EᵀKE and EᵀME, region by region, with the couplings across faces.
+fn condense(lattice: &Lattice, bands: &[[Band; 2]], cross: &Cross<'_>) -> Pair {
     let n = lattice.unknowns;
     let mut out = Pair {
         starts: Vec::with_capacity(n + 1),
@@ -189,13 +148,18 @@ fn condense(lattice: &Lattice, bands: &[[Band; 2]], cross: Vec<(u32, u32, f64)>)
     };
     out.starts.push(0);
     let mut row = Row::new(n);
-    let mut next = cross.into_iter().peekable();
-    for (space, band) in lattice.spaces.iter().zip(bands) {
+    for (n, (space, band)) in lattice.spaces.iter().zip(bands).enumerate() {
+        let whole = Splines {
+            n,
+            space,
+            band,
+            cross,
+        };
         // rows of the outer splines, in unknowns, and who is tied to whom
         let mut outer: Vec<Vec<(u32, f64, f64)>> = Vec::with_capacity(space.ties.len());
         let mut users: Vec<Vec<(u32, f64)>> = vec![Vec::new(); space.splines.len()];
         for (t, tie) in space.ties.iter().enumerate() {
-            add_band_row(space, band, tie.spline as usize, &mut row);
+            whole.add_row(tie.spline as usize, &mut row);
             let mut list = Vec::with_capacity(row.list.len());
             row.drain(|u, k, m| list.push((u, k, m)));
             outer.push(list);
@@ -204,15 +168,11 @@ fn condense(lattice: &Lattice, bands: &[[Band; 2]], cross: Vec<(u32, u32, f64)>)
             }
         }
         for (local, &spline) in space.splines.iter().enumerate() {
-            add_band_row(space, band, spline as usize, &mut row);
+            whole.add_row(spline as usize, &mut row);
             for &(t, c) in &users[local] {
                 for &(u, k, m) in &outer[t as usize] {
                     row.add(u, c * k, c * m);
                 }
-            }
-            let me = (space.unknowns[0] + local) as u32;
-            while let Some((_, c, v)) = next.next_if(|e| e.0 == me) {
-                row.add(c, v, 0.0);
             }
             row.drain(|u, k, m| {
                 out.columns.push(u as usize);
@@ -225,8 +185,28 @@ fn condense(lattice: &Lattice, bands: &[[Band; 2]], cross: Vec<(u32, u32, f64)>)
     out
 }
 
-fn add_band_row(space: &Space, band: &[Band; 2], spline: usize, row: &mut Row) {
-    Band::row(band, spline, |s, [k, m]| match space.roles[s] {
+/// All couplings of the splines of one region.
+struct Splines<'a> {
+    n: usize,
+    space: &'a Space,
+    band: &'a [Band; 2],
+    cross: &'a Cross<'a>,
+}
+
+impl Splines<'_> {
+    /// Adds the row of a spline, columns condensed to unknowns.
+    fn add_row(&self, spline: usize, row: &mut Row) {
+        Band::row(self.band, spline, |s, [k, m]| {
+            add(self.space, s, [k, m], row)
+        });
+        self.cross
+            .row(self.n, spline, |space, s, k| add(space, s, [k, 0.0], row));
+    }
+}
+
+#[inline]
+fn add(space: &Space, spline: usize, [k, m]: [f64; 2], row: &mut Row) {
+    match space.roles[spline] {
         Role::Inner(u) => row.add(u, k, m),
         Role::Outer(t) => {
             for &(u, c) in &space.ties[t as usize].terms {
@@ -234,5 +214,5 @@ fn add_band_row(space: &Space, band: &[Band; 2], spline: usize, row: &mut Row) {
             }
         }
         Role::Dead => {}
-    });
+    }
 }

@@ -8,17 +8,15 @@ use crate::geometry::Point;
 use crate::lattice::{Face, Lattice, gauss};
 
 /// The terms of one face over the splines alive on its two cells.
-pub struct Glued {
-    /// Regions, finer first.
-    pub regions: [usize; 2],
-    /// Cells.
-    pub cells: [[usize; 2]; 2],
-    /// Blocks (finer, finer), (finer, coarser), (coarser, coarser), row-major.
-    pub blocks: [Vec<f64>; 3],
+pub struct Blocks {
+    /// Finer against finer, coarser against coarser, row-major.
+    pub own: [Vec<f64>; 2],
+    /// Finer (rows) against coarser.
+    pub across: Vec<f64>,
 }
 
 /// Computes the terms of a face.
-pub fn glue(lattice: &Lattice, face: &Face, traces: &mut [Traces; 2]) -> Glued {
+pub fn glue(lattice: &Lattice, face: &Face, traces: &mut [Traces; 2]) -> Blocks {
     let p = lattice.degree;
     let b = (p + 1) * (p + 1);
     let r = face.regions.map(|n| &lattice.regions[n]);
@@ -26,7 +24,7 @@ pub fn glue(lattice: &Lattice, face: &Face, traces: &mut [Traces; 2]) -> Glued {
     let sum = inverse[0] + inverse[1];
     let gamma = inverse.map(|x| x / sum);
     let pen = 2.0 / sum;
-    let mut blocks = [vec![0.0; b * b], vec![0.0; b * b], vec![0.0; b * b]];
+    let [mut fine, mut across, mut coarse] = [0; 3].map(|_| vec![0.0; b * b]);
     let rule = gauss::rule(2 * p + 1);
     let d = face.ends[1] - face.ends[0];
     let long = d.norm();
@@ -45,15 +43,14 @@ pub fn glue(lattice: &Lattice, face: &Face, traces: &mut [Traces; 2]) -> Glued {
                 let (wf, wc) = (traces[0].value[j], traces[1].value[j]);
                 let (ef, ec) = (gamma[0] * traces[0].slope[j], gamma[1] * traces[1].slope[j]);
                 let k = i * b + j;
-                blocks[0][k] += w * (pen * vf * wf - df * wf - vf * ef);
-                blocks[1][k] += w * (-pen * vf * wc + df * wc - vf * ec);
-                blocks[2][k] += w * (pen * vc * wc + dc * wc + vc * ec);
+                fine[k] += w * (pen * vf * wf - df * wf - vf * ef);
+                across[k] += w * (-pen * vf * wc + df * wc - vf * ec);
+                coarse[k] += w * (pen * vc * wc + dc * wc + vc * ec);
             }
         }
     }
-    Glued {
-        regions: face.regions,
-        cells: face.cells,
-        blocks,
+    Blocks {
+        own: [fine, coarse],
+        across,
     }
 }

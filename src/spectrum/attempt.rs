@@ -54,18 +54,32 @@ impl Attempt {
         let mut lattice = Lattice::new(outline, plan.grid, plan.degree, &plan.splits)?;
         let places = lattice.places();
         timings.lattice += ms(clock);
-        let (mut pair, mut border, mut tail);
-        loop {
+        let (border, tail, system, found) = loop {
             let clock = Instant::now();
-            pair = assemble(&lattice, watch)?;
-            border = operators::border(&lattice, plan.corners.clone());
+            let pair = assemble(&lattice, watch)?;
+            let border = operators::border(&lattice, plan.corners.clone());
             timings.operators += ms(clock);
             let clock = Instant::now();
-            let coercive;
-            (coercive, tail) = prepare(&pair, &border, &places)?;
+            // without corner functions the count of levels shows whether the form is coercive
+            let known = border.is_empty() && matches!(window, Window::Lowest(_));
+            let (mut coercive, tail) = if known {
+                (true, Tail::default())
+            } else {
+                prepare(&pair, &border, &places)?
+            };
             timings.factor += ms(clock);
             if coercive {
-                break;
+                let (system, found) = levels(pair, &tail, &places, window, guess, timings, watch)?;
+                let sound = found.count.complete && found.values.iter().all(|&v| v > 0.0);
+                if known && !sound {
+                    coercive =
+                        eigen::with_inverse(&system.stiffness, &places, MEMORY, |below, _| {
+                            below == 0
+                        })?;
+                }
+                if coercive {
+                    break (border, tail, system, found);
+                }
             }
             if lattice.stiffening > STIFFEST {
                 return Err(SpectrumError::Numerical(
@@ -74,25 +88,7 @@ impl Attempt {
                 ));
             }
             lattice.stiffening *= 2.0;
-        }
-        let clock = Instant::now();
-        let system = System::new(pair, &tail, places);
-        timings.operators += ms(clock);
-        let problem = Problem {
-            stiffness: &system.stiffness,
-            mass: &system.mass,
-            places: &system.places,
-            tail: system.tail,
         };
-        let settings = Settings {
-            tolerance: TOLERANCE,
-            guess: Some(guess),
-            memory: MEMORY,
-            ..Settings::new(window)
-        };
-        let found = eigen::solve(&problem, &settings, watch)?;
-        timings.factor += found.effort.plan_ms + found.effort.factor_ms;
-        timings.solve += found.effort.solve_ms;
         let clock = Instant::now();
         let functions = system.functions(&lattice, &tail, &found.vectors);
         let residual = residual(&lattice, &border.corners, &functions, &found.values);
@@ -111,6 +107,37 @@ impl Attempt {
             bars,
         })
     }
+}
+
+/// The eigenvalue problem of a lattice, and its levels.
+fn levels(
+    pair: Pair,
+    tail: &Tail,
+    places: &[[f64; 2]],
+    window: Window,
+    guess: f64,
+    timings: &mut Timings,
+    watch: &Watch,
+) -> Result<(System, Found<f64>), SpectrumError> {
+    let clock = Instant::now();
+    let system = System::new(pair, tail, places.to_vec());
+    timings.operators += ms(clock);
+    let problem = Problem {
+        stiffness: &system.stiffness,
+        mass: &system.mass,
+        places: &system.places,
+        tail: system.tail,
+    };
+    let settings = Settings {
+        tolerance: TOLERANCE,
+        guess: Some(guess),
+        memory: MEMORY,
+        ..Settings::new(window)
+    };
+    let found = eigen::solve(&problem, &settings, watch)?;
+    timings.factor += found.effort.plan_ms + found.effort.factor_ms;
+    timings.solve += found.effort.solve_ms;
+    Ok((system, found))
 }
 
 /// Whether the stiffness is positive definite, and the corner functions made orthogonal by it.
