@@ -6,6 +6,7 @@ use super::field::Field;
 use super::levels::gather;
 use super::panel::Panel;
 use super::pencil::{Pattern, Pencil};
+use crate::progress::shared;
 use sprs::CsMat;
 
 /// Vectors solved for at a time.
@@ -43,14 +44,17 @@ pub fn with_inverse<T: Field, R>(
     let pencil = Pencil::new(&pattern, k, &one)?;
     let mut factor = Factor::<T>::new(&symbolic);
     factor.at(&pencil, 0.0)?;
-    let mut spare: Panel<T, B> = Vec::new();
     let mut solve = |x: &mut [T], count: usize| {
-        for group in x[..count * n].chunks_mut(B * n) {
-            let inward: Vec<Vec<T>> = group.chunks(n).map(|x| pencil.inward(x)).collect();
+        let groups: Vec<&[T]> = x[..count * n].chunks(B * n).collect();
+        let solved = shared(&groups, 1, |group| {
+            let inward: Vec<Vec<T>> = group[0].chunks(n).map(|x| pencil.inward(x)).collect();
             let mut panel: Panel<T, B> = gather(n, inward.iter().map(Vec::as_slice));
-            factor.solve(&mut panel, &mut spare);
+            factor.solve(&mut panel, &mut Vec::new());
+            panel
+        });
+        for (panel, group) in solved.iter().zip(x[..count * n].chunks_mut(B * n)) {
             for (c, x) in group.chunks_mut(n).enumerate() {
-                for (&i, row) in pattern.order.iter().zip(&panel) {
+                for (&i, row) in pattern.order.iter().zip(panel) {
                     x[i as usize] = T::at(row, c);
                 }
             }

@@ -6,6 +6,7 @@ use super::singular::{CornerSpace, is_singular};
 use super::trace::Grid;
 use super::tree::Splits;
 use crate::geometry::{Corner, Outline, Point};
+use std::f64::consts::PI;
 
 /// What the lattice is chosen from.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -18,6 +19,8 @@ pub struct Demand {
     pub cell: Option<f64>,
     /// Spline degree.
     pub degree: usize,
+    /// Cells smaller than the first guess by this factor, features included.
+    pub finer: f64,
     /// Attempts before this one: each makes the corner functions reach farther.
     pub round: usize,
 }
@@ -47,15 +50,13 @@ impl Plan {
         let h = demand.cell.unwrap_or(0.95 * scaled / demand.wave_number);
         // no coarser than a handful of cells over the outline
         let size = outline.bounds().size();
-        let h = h.min(size.x.min(size.y) / 3.0);
-        Self::with_cell(outline, demand, h)
-    }
-
-    /// As [`Plan::new`] with the cell size given.
-    pub fn with_cell(outline: &Outline, demand: &Demand, h: f64) -> Self {
+        let h = h.min(size.x.min(size.y) / 3.0) * demand.finer;
         let grid = Grid::over(outline, h);
         let mut splits = Splits::default();
-        let mut list = spots(outline, h);
+        let mut list = spots(outline, h / demand.finer);
+        for spot in &mut list {
+            spot.cell *= demand.finer;
+        }
         let mut corners = Vec::new();
         let lengths = chords(outline);
         for (corner, edges) in worthwhile(outline, demand, h) {
@@ -118,7 +119,12 @@ fn chords(outline: &Outline) -> Vec<f64> {
 
 /// How far a corner is from straight, radians.
 fn bend(corner: &Corner) -> f64 {
-    (std::f64::consts::PI - corner.angle).abs()
+    (PI - corner.angle).abs()
+}
+
+/// How far a corner is from the nearest angle π/k, which needs no functions, radians.
+fn departure(corner: &Corner) -> f64 {
+    (PI / (PI / corner.angle).round().max(1.0) - corner.angle).abs()
 }
 
 /// Radius of a corner's functions in cells. Measured on the L (bend π/2) at p = 5, h = 0.06: errors
@@ -131,7 +137,7 @@ fn cells_per_radius(bend: f64, accuracy: f64) -> f64 {
 /// The corners that need functions: the weakest are left out as long as all of them together change
 /// the levels by less than a tenth of the accuracy.
 ///
-/// A bend δ whose fluctuation reaches ℓ (a cell, or the next corner) costs about
+/// A bend δ (or departure from another angle that needs none) whose fluctuation reaches ℓ (a cell, or the next corner) costs about
 /// 0.015 δ²ℓ² (∂ₙu)², and (∂ₙu)² is λ/A on average (Rellich 1940); polygons of N chords on a circle
 /// give 0.015 against the exact 4ζ(3)/N³.
 fn worthwhile(outline: &Outline, demand: &Demand, h: f64) -> Vec<(Corner, [u32; 2])> {
@@ -140,10 +146,10 @@ fn worthwhile(outline: &Outline, demand: &Demand, h: f64) -> Vec<(Corner, [u32; 
     let mut all: Vec<(f64, (Corner, [u32; 2]))> = singular_corners(outline)
         .into_iter()
         // so sharp that the wave dies out smoothly in it
-        .filter(|(c, _)| std::f64::consts::PI / c.angle <= p_most(demand.degree))
+        .filter(|(c, _)| PI / c.angle <= p_most(demand.degree))
         .map(|(c, e)| {
             let reach = e.map(|k| lengths[k as usize]).into_iter().fold(h, f64::min);
-            (0.015 * (bend(&c) * reach).powi(2) / area, (c, e))
+            (0.015 * (departure(&c) * reach).powi(2) / area, (c, e))
         })
         .collect();
     all.sort_by(|a, b| a.0.total_cmp(&b.0));

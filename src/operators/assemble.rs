@@ -5,9 +5,9 @@ use super::cell::{Element, Kernel};
 use super::cross::Cross;
 
 use super::tables::Tables;
-use super::wall::{Traces, add_wall, beta, symmetrise};
-use crate::lattice::{Lattice, Role, Space};
-use crate::progress::{Cancelled, Watch};
+use super::wall::{Traces, beta, wall_block};
+use crate::lattice::{Cut, Lattice, Role, Space};
+use crate::progress::{Cancelled, Watch, shared};
 
 /// Stiffness and mass on one sparsity pattern, symmetric, rows ascending.
 #[derive(Clone, Debug)]
@@ -48,6 +48,9 @@ pub fn assemble(lattice: &Lattice, watch: &Watch) -> Result<Pair, Cancelled> {
     Ok(condense(lattice, &bands, &cross))
 }
 
+/// Cut cells a thread takes at a time.
+const CUTS: usize = 16;
+
 /// Stiffness and mass bands of one region, walls included.
 fn fill(lattice: &Lattice, n: usize, t: &Tables) -> [Band; 2] {
     let (region, space) = (&lattice.regions[n], &lattice.spaces[n]);
@@ -58,28 +61,23 @@ fn fill(lattice: &Lattice, n: usize, t: &Tables) -> [Band; 2] {
         mass.add(c[0] as usize, c[1] as usize, &whole.mass);
     }
     let pen = beta(lattice) / region.h;
-    let mut kernel = Kernel::new(t);
-    let mut element = Element::zeros(t.p);
-    let mut traces = Traces::new(t.p);
-    let mut block = vec![0.0; whole.mass.len()];
-    let b = (t.p + 1) * (t.p + 1);
-    for c in &region.cuts {
-        kernel.element(&c.weights, region.h, &mut element);
-        block.fill(0.0);
-        let low = region.low(c.i, c.j);
-        add_wall(
-            &mut block,
-            &mut traces,
-            &lattice.trace.pieces,
-            &c.parts,
-            low,
-            region.h,
-            pen,
-        );
-        symmetrise(&mut block, b);
-        for (e, w) in element.stiffness.iter_mut().zip(&block) {
-            *e += w;
-        }
+    let cuts = shared(&region.cuts, CUTS, |cuts| {
+        let mut kernel = Kernel::new(t);
+        let mut traces = Traces::new(t.p);
+        let pieces = &lattice.trace.pieces;
+        let element = |c: &Cut| {
+            let mut out = Element::zeros(t.p);
+            kernel.element(&c.weights, region.h, &mut out);
+            let low = region.low(c.i, c.j);
+            let wall = wall_block(&mut traces, pieces, &c.parts, low, region.h, pen);
+            for (e, w) in out.stiffness.iter_mut().zip(wall) {
+                *e += w;
+            }
+            out
+        };
+        cuts.iter().map(element).collect::<Vec<_>>()
+    });
+    for (c, element) in region.cuts.iter().zip(cuts.iter().flatten()) {
         stiff.add(c.i, c.j, &element.stiffness);
         mass.add(c.i, c.j, &element.mass);
     }

@@ -7,6 +7,7 @@ mod assemble;
 mod band;
 mod border;
 mod cell;
+mod corner;
 mod cross;
 mod glue;
 mod residual;

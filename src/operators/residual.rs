@@ -9,11 +9,15 @@ use super::tables::Tables;
 use super::wall::{Traces, beta, points, points_needed};
 use crate::geometry::{Point, pt};
 use crate::lattice::{Cell, CornerSpace, Key, Lattice, Part, Value, gauss};
+use crate::progress::shared;
 
 /// Weight of the wall's share. A slope error e on the wall costs (h/β)∫e² and shows as u = he/β
 /// there: (β/h)∫u², over the share of η² that is error. At 22 the ring and the disc, whose inner
 /// and outer rims err differently, have the same ratio of error to η² (0.016 to 0.047).
 const WALL: f64 = 22.0;
+
+/// Cells a thread takes at a time.
+const STRETCH: usize = 64;
 
 /// Coefficients of several functions on a lattice.
 #[derive(Clone, Debug)]
@@ -56,7 +60,6 @@ pub fn residual(
         shares: Vec::new(),
     };
     let mut index = std::collections::HashMap::new();
-    let mut work = Work::new(f.count);
     for (n, r) in lattice.regions.iter().enumerate() {
         let whole: Vec<f64> = {
             let w = &tables[0].w;
@@ -65,29 +68,30 @@ pub fn residual(
                 .collect()
         };
         let inside = r.inside.iter().map(|c| (c[0] as usize, c[1] as usize));
-        for (i, j) in inside.chain(r.cuts.iter().map(|c| (c.i, c.j))) {
-            let (t, weights) = match r.cell(i as i64, j as i64) {
-                Cell::Cut(c) => (&tables[1], &r.cuts[c as usize].weights),
-                _ => (&tables[0], &whole),
-            };
-            pulp::Arch::new().dispatch(|| work.cell(lattice, n, (i, j), t, f));
-            work.add_corners(lattice, n, (i, j), t, corners, &first, f);
-            let base = out.shares.len();
-            out.shares.resize(base + f.count, 0.0);
-            work.square(weights, values, r.h * r.h, &mut out.shares[base..]);
-            if let Cell::Cut(c) = r.cell(i as i64, j as i64) {
-                let parts = &r.cuts[c as usize].parts;
-                work.wall(
-                    lattice,
-                    n,
-                    (i, j),
-                    parts,
-                    corners,
-                    &first,
-                    f,
-                    &mut out.shares[base..],
-                );
+        let list: Vec<_> = inside.chain(r.cuts.iter().map(|c| (c.i, c.j))).collect();
+        let arch = pulp::Arch::new();
+        let shares = shared(&list, STRETCH, |cells| {
+            let mut work = Work::new(f.count);
+            let mut shares = vec![0.0; cells.len() * f.count];
+            for (&(i, j), out) in cells.iter().zip(shares.chunks_exact_mut(f.count)) {
+                let (t, weights) = match r.cell(i as i64, j as i64) {
+                    Cell::Cut(c) => (&tables[1], &r.cuts[c as usize].weights),
+                    _ => (&tables[0], &whole),
+                };
+                arch.dispatch(|| {
+                    work.cell(lattice, n, (i, j), t, f);
+                    work.add_corners(lattice, n, (i, j), t, corners, &first, f);
+                    work.square(weights, values, r.h * r.h, out);
+                    if let Cell::Cut(c) = r.cell(i as i64, j as i64) {
+                        let parts = &r.cuts[c as usize].parts;
+                        work.wall(lattice, n, (i, j), parts, corners, &first, f, out);
+                    }
+                });
             }
+            shares
+        });
+        out.shares.extend(shares.into_iter().flatten());
+        for (i, j) in list {
             index.insert((n, i, j), out.cells.len());
             out.cells.push(Key {
                 level: r.level,
@@ -171,6 +175,7 @@ impl Work {
     }
 
     #[allow(clippy::too_many_arguments)]
+    #[inline(always)]
     fn add_corners(
         &mut self,
         lattice: &Lattice,
@@ -207,6 +212,7 @@ impl Work {
 
     /// Adds WALL·β/h ∫u² over the walls of a cell.
     #[allow(clippy::too_many_arguments)]
+    #[inline(always)]
     fn wall(
         &mut self,
         lattice: &Lattice,
@@ -250,6 +256,7 @@ impl Work {
     }
 
     /// Adds scale · Σ w (Δu + λu)² per function.
+    #[inline(always)]
     fn square(&self, weights: &[f64], values: &[f64], scale: f64, out: &mut [f64]) {
         let l = self.count;
         for (k, w) in weights.iter().enumerate() {

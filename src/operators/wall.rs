@@ -1,5 +1,6 @@
 //! The hard wall by symmetric Nitsche: −∫(∂ₙu)v − ∫u(∂ₙv) + (β/h)∫uv (Nitsche 1971).
 
+use super::rows::axpy;
 use crate::geometry::{Piece, Point};
 use crate::lattice::{Lattice, Part, gauss, spline};
 
@@ -104,7 +105,7 @@ impl Traces {
     }
 
     /// Evaluates at a point of the cell with lower left corner `low` and size `h`.
-    #[inline]
+    #[inline(always)]
     pub fn set(&mut self, at: Point, normal: Point, low: [f64; 2], h: f64) {
         let p = self.p;
         let (u, v) = ((at.x - low[0]) / h, (at.y - low[1]) / h);
@@ -123,41 +124,42 @@ impl Traces {
     }
 }
 
-/// Adds the wall terms of one cell to its stiffness block, with penalty `pen` = β/h.
-pub fn add_wall(
-    block: &mut [f64],
+/// The wall terms of one cell, over the splines alive on it, with penalty `pen` = β/h.
+pub fn wall_block(
     traces: &mut Traces,
     pieces: &[Piece],
     parts: &[Part],
     low: [f64; 2],
     h: f64,
     pen: f64,
-) {
-    let p = traces.p;
-    let b = (p + 1) * (p + 1);
-    let mut lower = vec![0.0; b];
-    for part in parts {
-        for q in points(
-            &pieces[part.piece as usize],
-            part,
-            points_needed(p, part, h),
-        ) {
-            traces.set(q.at, q.normal, low, h);
-            // half of the symmetric form: (β/2h v − ∂ₙv) vᵀ, and its transpose below
-            for (l, (v, d)) in lower.iter_mut().zip(traces.value.iter().zip(&traces.slope)) {
-                *l = q.weight * (0.5 * pen * v - d);
-            }
-            for (i, l) in lower.iter().enumerate() {
-                for (k, v) in block[i * b..(i + 1) * b].iter_mut().zip(&traces.value) {
-                    *k += l * v;
+) -> Vec<f64> {
+    let b = (traces.p + 1) * (traces.p + 1);
+    let (mut out, mut left) = (vec![0.0; b * b], vec![0.0; b]);
+    pulp::Arch::new().dispatch(|| {
+        for part in parts {
+            let points = points(
+                &pieces[part.piece as usize],
+                part,
+                points_needed(traces.p, part, h),
+            );
+            for q in points {
+                traces.set(q.at, q.normal, low, h);
+                // half of the symmetric form: (β/2h v − ∂ₙv) vᵀ, and its transpose below
+                for (l, (v, d)) in left.iter_mut().zip(traces.value.iter().zip(&traces.slope)) {
+                    *l = q.weight * (0.5 * pen * v - d);
+                }
+                for (row, l) in out.chunks_exact_mut(b).zip(&left) {
+                    axpy(row, *l, &traces.value);
                 }
             }
         }
-    }
+    });
+    symmetrise(&mut out, b);
+    out
 }
 
 /// Adds the transpose of a block to itself.
-pub fn symmetrise(block: &mut [f64], b: usize) {
+fn symmetrise(block: &mut [f64], b: usize) {
     for i in 0..b {
         block[i * b + i] *= 2.0;
         for k in 0..i {

@@ -1,4 +1,9 @@
-//! How far a job is, and whether somebody called it off. Knows nothing of terminals.
+//! How far a job is, whether somebody called it off, and how work is shared among threads. Knows
+//! nothing of terminals.
+
+mod crew;
+
+pub use crew::shared;
 
 use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};

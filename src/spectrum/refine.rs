@@ -1,6 +1,7 @@
 //! What to change when an error bar is above the accuracy asked for.
 
 use super::attempt::Attempt;
+use super::bars::SPREAD;
 use crate::lattice::{DEEPEST, Key};
 use std::cmp::Ordering;
 use std::collections::HashSet;
@@ -16,10 +17,10 @@ pub enum Next {
     Split(Vec<Key>),
 }
 
-/// Share of a level's η² that the split cells must hold.
-const BULK: f64 = 0.85;
-/// Above this share of all cells the error counts as spread out.
-const SPREAD_OUT: f64 = 0.2;
+/// Share of the error allowed that the cells left whole may hold.
+const LEFT: f64 = 0.5;
+/// Unknowns a split cell adds; splines at the edge of a region lie partly outside it.
+const PER_SPLIT: f64 = 5.0;
 
 /// Judges an attempt against the relative accuracy asked for.
 pub fn next(attempt: &Attempt, accuracy: f64) -> Next {
@@ -39,12 +40,13 @@ pub fn next(attempt: &Attempt, accuracy: f64) -> Next {
         }
         let share = |c: usize| r.shares[c * levels + l];
         order.sort_by(|&a, &b| share(b).partial_cmp(&share(a)).unwrap_or(Ordering::Equal));
-        let mut sum = 0.0;
+        let mut left = r.total[l];
+        let allowed = LEFT * accuracy * bar.0.abs() / SPREAD;
         for &c in &order {
-            if sum >= BULK * r.total[l] {
+            if left <= allowed {
                 break;
             }
-            sum += share(c);
+            left -= share(c);
             wanted[c] = true;
         }
     }
@@ -61,9 +63,12 @@ pub fn next(attempt: &Attempt, accuracy: f64) -> Next {
         .collect();
     few.sort_unstable();
     few.dedup();
-    if few.len() as f64 > SPREAD_OUT * r.cells.len() as f64 || few.is_empty() {
-        let p = attempt.lattice.degree as f64;
-        Next::Finer((0.7 / worst).powf(0.5 / p).clamp(0.4, 0.93))
+    let p = attempt.lattice.degree as f64;
+    let factor = (0.7 / worst).powf(0.5 / p).clamp(0.4, 0.93);
+    let split = PER_SPLIT * few.len() as f64;
+    let finer = attempt.unknowns as f64 * (factor.powi(-2) - 1.0);
+    if few.is_empty() || finer < split {
+        Next::Finer(factor)
     } else {
         Next::Split(few)
     }

@@ -89,6 +89,7 @@ fn refined(
         accuracy: wanted.accuracy,
         cell: wanted.cell,
         degree: wanted.degree.unwrap_or(DEGREE),
+        finer: 1.0,
         round: 0,
     };
     let window = match from {
@@ -112,6 +113,29 @@ fn refined(
         watch.step(round, attempts, "lattices")?;
         let attempt = Attempt::new(outline, plan.clone(), window, top, &mut timings, watch)?;
         let step = next(&attempt, wanted.accuracy);
+        if std::env::var("DBG").is_ok() {
+            eprintln!(
+                "round {round} h {:.3} n {} regions {} corners {} raw {} stiff {} worst {:.1e} {} | {:?}",
+                plan.grid.h,
+                attempt.unknowns,
+                attempt.lattice.regions.len(),
+                plan.corners.len(),
+                attempt.functions.corners.len() / attempt.functions.count.max(1),
+                attempt.lattice.stiffening,
+                attempt
+                    .bars
+                    .iter()
+                    .map(|b| b.1 / b.0.abs())
+                    .fold(0.0, f64::max),
+                match &step {
+                    Next::Done => "done".into(),
+                    Next::Finer(f) => format!("finer {f:.2}"),
+                    Next::Split(c) => format!("split {}", c.len()),
+                },
+                timings
+            );
+        }
+
         let insisted = wanted.cell.is_some();
         if step == Next::Done || insisted || round + 1 == attempts {
             return Ok(finish(outline, kinetic, wanted, attempt, timings));
@@ -119,7 +143,8 @@ fn refined(
         match step {
             Next::Finer(factor) => {
                 demand.round += 1;
-                plan = Plan::with_cell(outline, &demand, plan.grid.h * factor);
+                demand.finer *= factor;
+                plan = Plan::new(outline, &demand);
                 extra.clear();
             }
             Next::Split(cells) => {

@@ -5,6 +5,7 @@
 
 use crate::eigen::{EigenError, combine, project, symmetric_eigen};
 use crate::operators::{Border, Pair};
+use crate::progress::shared;
 
 /// Directions of the scaled S′ with eigenvalues below this are within rounding of the splines.
 const DROP: f64 = 1e-9;
@@ -59,9 +60,7 @@ impl Tail {
         solve(&mut x, q)?;
         // one step of refinement: X is subtracted from numbers it nearly equals
         let mut r = k.clone();
-        for (r, x) in r.chunks_exact_mut(n).zip(x.chunks_exact(n)) {
-            subtract(pair, &pair.stiffness, x, r);
-        }
+        subtract(pair, &pair.stiffness, &x, &mut r);
         solve(&mut r, q)?;
         for (x, r) in x.iter_mut().zip(&r) {
             *x += r;
@@ -76,9 +75,7 @@ impl Tail {
         let (values, vectors) = symmetric_eigen(&s, q)?;
         // m − MX, and Xᵀ of it and of m
         let mut rest = m.clone();
-        for (r, x) in rest.chunks_exact_mut(n).zip(x.chunks_exact(n)) {
-            subtract(pair, &pair.mass, x, r);
-        }
+        subtract(pair, &pair.mass, &x, &mut rest);
         let (xr, xm) = (project(&x, q, &rest, q, n), project(&x, q, &m, q, n));
         // own mass: MS − Xᵀm − mᵀX + XᵀMX = MS − Xᵀ(m − MX) − (Xᵀm)ᵀ
         let g: Vec<f64> = (0..q * q)
@@ -128,15 +125,42 @@ impl Tail {
     }
 }
 
-/// r ← r − A x, A on the pair's pattern.
+/// Vectors multiplied together: a row of them is one cache line.
+const TOGETHER: usize = 8;
+
+/// r ← r − A x for several vectors, one after the other, A on the pair's pattern.
 fn subtract(pair: &Pair, values: &[f64], x: &[f64], r: &mut [f64]) {
-    for (i, r) in r.iter_mut().enumerate() {
-        let e = pair.starts[i]..pair.starts[i + 1];
-        let ax: f64 = values[e.clone()]
-            .iter()
-            .zip(&pair.columns[e])
-            .map(|(v, &c)| v * x[c])
-            .sum();
+    let n = pair.len();
+    let groups: Vec<&[f64]> = x.chunks(TOGETHER * n).collect();
+    let products = shared(&groups, 1, |group| product(pair, values, group[0]));
+    for (r, ax) in r.iter_mut().zip(products.iter().flatten()) {
         *r -= ax;
     }
+}
+
+/// A x for up to [`TOGETHER`] vectors.
+fn product(pair: &Pair, values: &[f64], x: &[f64]) -> Vec<f64> {
+    let n = pair.len();
+    let mut rows = vec![[0.0; TOGETHER]; n];
+    for (k, x) in x.chunks_exact(n).enumerate() {
+        for (row, x) in rows.iter_mut().zip(x) {
+            row[k] = *x;
+        }
+    }
+    let mut out = vec![0.0; x.len()];
+    pulp::Arch::new().dispatch(|| {
+        for i in 0..n {
+            let e = pair.starts[i]..pair.starts[i + 1];
+            let mut sum = [0.0; TOGETHER];
+            for (v, &c) in values[e.clone()].iter().zip(&pair.columns[e]) {
+                for (s, x) in sum.iter_mut().zip(&rows[c]) {
+                    *s += v * x;
+                }
+            }
+            for (k, out) in out.chunks_exact_mut(n).enumerate() {
+                out[i] = sum[k];
+            }
+        }
+    });
+    out
 }
