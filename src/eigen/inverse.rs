@@ -11,6 +11,8 @@ use sprs::CsMat;
 
 /// Vectors solved for at a time.
 const B: usize = 8;
+/// Unknowns times vectors a thread takes at least.
+const WORTH: usize = 16_384;
 
 /// Factorises `k` (by rows, both triangles stored) and lends its inverse to `work`, which gets
 /// the number of negative eigenvalues and a solver that overwrites `count` right-hand sides,
@@ -46,13 +48,19 @@ pub fn with_inverse<T: Field, R>(
     factor.at(&pencil, 0.0)?;
     let mut solve = |x: &mut [T], count: usize| {
         let groups: Vec<&[T]> = x[..count * n].chunks(B * n).collect();
-        let solved = shared(&groups, 1, |group| {
-            let inward: Vec<Vec<T>> = group[0].chunks(n).map(|x| pencil.inward(x)).collect();
-            let mut panel: Panel<T, B> = gather(n, inward.iter().map(Vec::as_slice));
-            factor.solve(&mut panel, &mut Vec::new());
-            panel
+        // a thread is not worth less than a millisecond
+        let stretch = (WORTH / (n * B)).max(1);
+        let solved = shared(&groups, stretch, |groups| {
+            let solve = |group: &&[T]| {
+                let inward: Vec<Vec<T>> = group.chunks(n).map(|x| pencil.inward(x)).collect();
+                let mut panel: Panel<T, B> = gather(n, inward.iter().map(Vec::as_slice));
+                factor.solve(&mut panel, &mut Vec::new());
+                panel
+            };
+            groups.iter().map(solve).collect::<Vec<_>>()
         });
-        for (panel, group) in solved.iter().zip(x[..count * n].chunks_mut(B * n)) {
+        let solved = solved.iter().flatten();
+        for (panel, group) in solved.zip(x[..count * n].chunks_mut(B * n)) {
             for (c, x) in group.chunks_mut(n).enumerate() {
                 for (&i, row) in pattern.order.iter().zip(panel) {
                     x[i as usize] = T::at(row, c);
